@@ -1,0 +1,236 @@
+"""A detector and its interactions, compiled into one tensor that any flux can be folded with.
+
+Rows are final states by volume and species; columns are the counts a row is asked for: all
+reactions, those observed above threshold, the counted ones with the cross section 1σ low and
+high, those from outside the cross section's window, and the counted ones by bin of observed
+energy. The cross section and the response are integrated here, once (see
+`tenkpc.forecast.deposits`); what is left for `tenkpc.forecast.fold` is one sum over the nodes.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Sequence
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from tenkpc.detector.response import Response
+from tenkpc.forecast.deposits import (
+    CENTRAL,
+    HIGH,
+    LINE_WIDTH_MEV,
+    LOW,
+    OUTSIDE,
+    cell_edges,
+    columns,
+    deposit_weights,
+    parts,
+    total_weights,
+)
+from tenkpc.forecast.grid import EnergyGrid
+from tenkpc.interactions.base import FinalState, Fixed, Interaction
+from tenkpc.species import SPECIES
+
+Floats = NDArray[np.float64]
+
+# columns of the tensor; the bins of observed energy follow, then everything above the last edge
+REACTIONS, ABOVE_THRESHOLD, COUNTED_LOW, COUNTED_HIGH, COUNTED_OUTSIDE, FIRST_BIN = range(6)
+# nodes in each bin of neutrino energy, which are short
+PER_NEUTRINO_BIN = 5
+
+
+@dataclass(frozen=True)
+class Exposure:
+    """Some targets in a volume, exposed to one interaction and watched by one response."""
+
+    volume: str
+    targets: float
+    interaction: Interaction
+    response: Response
+
+
+@dataclass(frozen=True)
+class Row:
+    """Which events a row of the tensor counts."""
+
+    volume: str
+    interaction: str
+    final_state: str
+    species: str
+    seen: bool
+
+
+@dataclass(frozen=True, eq=False)
+class Compiled:
+    """The tensor of a detector.
+
+    Attributes
+    ----------
+    rows
+        what each row counts.
+    species
+        index of each row's species, shape (rows,).
+    grid
+        neutrino energies at which a flux must be given.
+    edges_mev
+        edges of the bins of observed energy.
+    tensor
+        events per fluence, shape (rows, nodes, columns), cm² MeV.
+    """
+
+    rows: tuple[Row, ...]
+    species: NDArray[np.intp]
+    grid: EnergyGrid
+    edges_mev: Floats
+    tensor: Floats
+
+    @property
+    def counted(self) -> Floats:
+        """Give the counted events alone, (rows, nodes, 1)."""
+        total: Floats = self.tensor[:, :, FIRST_BIN:].sum(axis=2, keepdims=True)
+        return total
+
+
+@dataclass(frozen=True, eq=False)
+class _Cells:
+    """Cells of visible energy and what a response makes of each."""
+
+    edges: Floats
+    share: Floats
+    above: Floats
+
+    @classmethod
+    def of(cls, response: Response, edges_mev: Floats, starts_mev: Iterable[float]) -> _Cells:
+        edges = cell_edges([*edges_mev, *response.knots_mev, *starts_mev])
+        low, high = edges[:-1], edges[1:]
+        share = response.share(low, high, edges_mev)
+        return cls(edges, share, response.above_threshold(low, high))
+
+
+def compile_rows(exposures: Sequence[Exposure], grid: EnergyGrid, edges_mev: Floats) -> Compiled:
+    """Compile every final state of every exposure for each species.
+
+    Parameters
+    ----------
+    exposures
+        targets, interactions and responses.
+    grid
+        grid of neutrino energies; the flux must be smooth inside its panels.
+    edges_mev
+        edges of the bins of observed energy, MeV, ascending.
+    """
+    rows, blocks = [], []
+    cells: dict[int, _Cells] = {}
+    for exposure, species, state in _states(exposures):
+        start = _offset(exposure.response, state)
+        rows.append(_row(exposure, species, state, seen=start is not None))
+        key = id(exposure.response)
+        if key not in cells:
+            starts = _starts(exposures, exposure.response)
+            cells[key] = _Cells.of(exposure.response, edges_mev, starts)
+        block = _block(state, exposure.response, grid, cells[key], edges_mev, start)
+        blocks.append(block * exposure.targets)
+    species_index = np.array([SPECIES.index(row.species) for row in rows], dtype=np.intp)
+    empty = np.zeros((0, grid.count, FIRST_BIN + len(edges_mev)))
+    tensor = np.stack(blocks) if blocks else empty
+    return Compiled(tuple(rows), species_index, grid, edges_mev, tensor)
+
+
+def by_neutrino_energy(
+    exposures: Sequence[Exposure], grid: EnergyGrid, edges_mev: Floats, neutrino_edges_mev: Floats
+) -> Floats:
+    """Counted events by bin of true neutrino energy, shape (rows, nodes, bins + 1).
+
+    The rows are those of `compile_rows`, the last column holds what lies above the last edge.
+    """
+    blocks = []
+    for exposure, _, state in _states(exposures):
+        starts = _starts(exposures, exposure.response)
+        cells = _Cells.of(exposure.response, edges_mev, starts)
+        start = _offset(exposure.response, state)
+        block = np.zeros((grid.count, len(neutrino_edges_mev)))
+        if start is not None:
+            kept, kinetic = _kept(state, exposure.response, cells, edges_mev, start)
+            for part in parts(state, grid, kinetic, neutrino_edges_mev, PER_NEUTRINO_BIN):
+                middle = 0.5 * (part.low_mev + part.high_mev)
+                column = max(int(np.searchsorted(neutrino_edges_mev, middle)) - 1, 0)
+                counted = kept[part.cells] @ part.weights[:, CENTRAL]
+                block[columns(part.panel), column] += counted
+        blocks.append(block * exposure.targets)
+    return np.stack(blocks)
+
+
+def _states(exposures: Sequence[Exposure]) -> list[tuple[Exposure, str, FinalState]]:
+    return [
+        (exposure, species, state)
+        for exposure in exposures
+        for species in SPECIES
+        for state in exposure.interaction.final_states(species)
+    ]
+
+
+def _row(exposure: Exposure, species: str, state: FinalState, *, seen: bool) -> Row:
+    return Row(exposure.volume, exposure.interaction.key, state.label, species, seen)
+
+
+def _offset(response: Response, state: FinalState) -> float | None:
+    """Visible energy of an event whose lead particle adds none; None if it is not seen."""
+    if state.lead not in response.offsets_mev:
+        return None
+    extras = (response.visible(particle, energy) for particle, energy in state.extras)
+    return response.event_offset_mev + sum(energy for energy in extras if energy is not None)
+
+
+def _starts(exposures: Sequence[Exposure], response: Response) -> set[float]:
+    """Lowest visible energies of the final states that a response sees."""
+    starts = set()
+    for exposure, _, state in _states(exposures):
+        offset = _offset(response, state) if exposure.response is response else None
+        if offset is not None:
+            starts.add(offset + (response.visible(state.lead, 0.0) or 0.0))
+    return starts
+
+
+def _block(
+    state: FinalState,
+    response: Response,
+    grid: EnergyGrid,
+    cells: _Cells,
+    edges_mev: Floats,
+    start: float | None,
+) -> Floats:
+    """Columns of one row for a single target, shape (nodes, columns)."""
+    block = np.zeros((grid.count, FIRST_BIN + len(edges_mev)))
+    block[:, REACTIONS] = total_weights(state, grid)[CENTRAL]
+    if start is None:
+        return block
+    share, above, kinetic = _observed(state, response, cells, edges_mev, start)
+    weights = deposit_weights(state, grid, kinetic)
+    counted = share.sum(axis=1)
+    block[:, ABOVE_THRESHOLD] = weights[CENTRAL] @ above
+    block[:, COUNTED_LOW] = weights[LOW] @ counted
+    block[:, COUNTED_HIGH] = weights[HIGH] @ counted
+    block[:, COUNTED_OUTSIDE] = weights[OUTSIDE] @ counted
+    block[:, FIRST_BIN:] = weights[CENTRAL] @ share
+    return block
+
+
+def _observed(
+    state: FinalState, response: Response, cells: _Cells, edges_mev: Floats, start: float
+) -> tuple[Floats, Floats, Floats]:
+    """Share per bin and above threshold of each cell, and the cells' kinetic edges."""
+    if isinstance(state.deposit, Fixed):
+        line = start + (response.visible(state.lead, state.deposit.kinetic_mev) or 0.0)
+        low = np.array([line - 0.5 * LINE_WIDTH_MEV])
+        high = low + LINE_WIDTH_MEV
+        share = response.share(low, high, edges_mev)
+        return share, response.above_threshold(low, high), np.zeros(2)
+    return cells.share, cells.above, response.kinetic(state.lead, cells.edges - start)
+
+
+def _kept(
+    state: FinalState, response: Response, cells: _Cells, edges_mev: Floats, start: float
+) -> tuple[Floats, Floats]:
+    share, _, kinetic = _observed(state, response, cells, edges_mev, start)
+    return share.sum(axis=1), kinetic
