@@ -1,0 +1,1 @@
+"""What stands between an interaction and an observed number."""

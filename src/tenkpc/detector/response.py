@@ -222,9 +222,11 @@ def _segment_integrals(
 ) -> Floats:
     """∫ efficiency × observed density over each segment, shape (cells, segments)."""
     left, right = borders[:-1], borders[1:]
-    zeroth = np.diff(_cumulative(borders, low, high, sigma), axis=1)
+    zeroth: Floats = np.diff(_cumulative(borders, low, high, sigma), axis=1)
     slope = (weights[1] - weights[0]) / (right - left)
-    if not np.any(slope):
-        return zeroth * weights[0]
-    first = _moments(right, low, high, sigma, left)[1] - _moments(left, low, high, sigma, left)[1]
-    return zeroth * weights[0] + slope * first
+    integrals: Floats = zeroth * weights[0]
+    if np.any(slope):
+        end = _moments(right, low, high, sigma, left)[1]
+        start = _moments(left, low, high, sigma, left)[1]
+        integrals += slope * (end - start)
+    return integrals

@@ -29,7 +29,7 @@ from tenkpc.forecast.deposits import (
     total_weights,
 )
 from tenkpc.forecast.grid import EnergyGrid
-from tenkpc.interactions.base import FinalState, Fixed, Interaction
+from tenkpc.interactions.base import HIGHEST_ENERGY_MEV, FinalState, Fixed, Interaction
 from tenkpc.species import SPECIES
 
 Floats = NDArray[np.float64]
@@ -38,6 +38,8 @@ Floats = NDArray[np.float64]
 REACTIONS, ABOVE_THRESHOLD, COUNTED_LOW, COUNTED_HIGH, COUNTED_OUTSIDE, FIRST_BIN = range(6)
 # nodes in each bin of neutrino energy, which are short
 PER_NEUTRINO_BIN = 5
+# a single bin, for where the observed energy does not matter
+EVERYTHING = np.array([0.0, HIGHEST_ENERGY_MEV])
 
 
 @dataclass(frozen=True)
@@ -138,7 +140,7 @@ def compile_rows(exposures: Sequence[Exposure], grid: EnergyGrid, edges_mev: Flo
 
 
 def by_neutrino_energy(
-    exposures: Sequence[Exposure], grid: EnergyGrid, edges_mev: Floats, neutrino_edges_mev: Floats
+    exposures: Sequence[Exposure], grid: EnergyGrid, neutrino_edges_mev: Floats
 ) -> Floats:
     """Counted events by bin of true neutrino energy, shape (rows, nodes, bins + 1).
 
@@ -147,11 +149,11 @@ def by_neutrino_energy(
     blocks = []
     for exposure, _, state in _states(exposures):
         starts = _starts(exposures, exposure.response)
-        cells = _Cells.of(exposure.response, edges_mev, starts)
+        cells = _Cells.of(exposure.response, EVERYTHING, starts)
         start = _offset(exposure.response, state)
         block = np.zeros((grid.count, len(neutrino_edges_mev)))
         if start is not None:
-            kept, kinetic = _kept(state, exposure.response, cells, edges_mev, start)
+            kept, kinetic = _kept(state, exposure.response, cells, start)
             for part in parts(state, grid, kinetic, neutrino_edges_mev, PER_NEUTRINO_BIN):
                 middle = 0.5 * (part.low_mev + part.high_mev)
                 column = max(int(np.searchsorted(neutrino_edges_mev, middle)) - 1, 0)
@@ -230,7 +232,8 @@ def _observed(
 
 
 def _kept(
-    state: FinalState, response: Response, cells: _Cells, edges_mev: Floats, start: float
+    state: FinalState, response: Response, cells: _Cells, start: float
 ) -> tuple[Floats, Floats]:
-    share, _, kinetic = _observed(state, response, cells, edges_mev, start)
+    """Counted share of each cell, and the cells' kinetic edges."""
+    share, _, kinetic = _observed(state, response, cells, EVERYTHING, start)
     return share.sum(axis=1), kinetic

@@ -1,0 +1,5 @@
+"""Run the shell with ``python -m tenkpc``."""
+
+from tenkpc.cli import main
+
+main()

@@ -1,0 +1,206 @@
+"""The shell: read what was typed, call one function, print, and end with the right code."""
+
+from __future__ import annotations
+
+import os
+import sys
+import tempfile
+from collections.abc import Sequence
+from importlib import import_module
+from pathlib import Path
+from typing import TYPE_CHECKING, Any
+
+import click
+
+from tenkpc import __version__
+from tenkpc.errors import ComputationError, InputError
+
+if TYPE_CHECKING:
+    from tenkpc.detector.detector import Detector
+    from tenkpc.forecast.forecast import Forecast
+    from tenkpc.source.burst import Burst
+
+BURST = "ordinary-collapse"
+DISTANCE = "10 kpc"
+CONVERSIONS = ("adiabatic", "equilibrated", "unconverted")
+ORDERINGS = ("inverted", "normal")
+LISTS = ("bursts", "detectors", "interactions", "materials")
+
+
+class Shell(click.Group):
+    """A group of commands that turns our errors into plain lines and exit codes."""
+
+    def invoke(self, context: click.Context) -> Any:
+        """Run a command; 2 is for what was typed or read, 1 for a computation that failed."""
+        try:
+            return super().invoke(context)
+        except InputError as error:
+            click.echo(str(error), err=True)
+            context.exit(2)
+        except ComputationError as error:
+            click.echo(str(error), err=True)
+            context.exit(1)
+
+
+@click.group(cls=Shell, context_settings={"help_option_names": ["-h", "--help"]})
+@click.version_option(__version__, prog_name="tenkpc")
+def main() -> None:
+    """Forecast what a detector records when a core-collapse supernova goes off nearby."""
+
+
+@main.command()
+@click.argument("detector")
+@click.option("--burst", default=BURST, show_default=True, help="A preset or a burst file.")
+@click.option("--distance", default=DISTANCE, show_default=True, help="With its unit.")
+@click.option(
+    "--conversion",
+    type=click.Choice(CONVERSIONS),
+    default="adiabatic",
+    show_default=True,
+    help="What happens to the flavours in the star.",
+)
+@click.option(
+    "--ordering",
+    type=click.Choice(ORDERINGS),
+    default="normal",
+    show_default=True,
+    help="Of the neutrino masses, for adiabatic conversion.",
+)
+@click.option("--only", "only", multiple=True, metavar="KEY", help="Only these interactions.")
+@click.option("--between", nargs=2, metavar="T1 T2", help="Only this window after bounce.")
+@click.option("--json", "as_json", is_flag=True, help="Print numbers and inputs as JSON.")
+@click.option(
+    "--out",
+    metavar="FILE",
+    help="Write to FILE instead: .txt or .html the page, .json all, .csv the counts.",
+)
+def forecast(
+    detector: str,
+    burst: str,
+    distance: str,
+    conversion: str,
+    ordering: str,
+    only: tuple[str, ...],
+    between: tuple[str, str] | None,
+    as_json: bool,
+    out: str | None,
+) -> None:
+    """Count what DETECTOR, a file or a name of the gallery, records of a burst."""
+    from tenkpc.forecast.forecast import Forecast
+    from tenkpc.propagation.conversion import parse
+
+    made = Forecast(
+        _detector(detector),
+        _burst(burst),
+        distance=distance,
+        conversion=parse(conversion, ordering),
+        interactions=_only(only),
+    )
+    if between:
+        made = made.within(time=between)
+    if out is not None:
+        _write(Path(out), _as_file(made, Path(out)))
+    else:
+        click.echo(made.to_json() if as_json else repr(made))
+
+
+@main.command()
+@click.argument("file")
+@click.option("--json", "as_json", is_flag=True, help="Print what was found as JSON.")
+def check(file: str, as_json: bool) -> None:
+    """Check FILE, a detector or burst file, and say what it describes."""
+    from tenkpc import textfiles
+
+    text = textfiles.read_text(file)
+    if "component" in textfiles.document(text, file):
+        words = str(_load("tenkpc.source.burst", "Burst").load(file).summary())
+    else:
+        words = _load("tenkpc.detector.detector", "Detector").load(file).describe()
+    if as_json:
+        import json
+
+        words = json.dumps({"file": file, "problems": 0, "description": words.splitlines()})
+    click.echo(words)
+
+
+@main.command("list")
+@click.argument("what", type=click.Choice(LISTS))
+@click.argument("name", required=False)
+@click.option("--json", "as_json", is_flag=True, help="Print the list as JSON.")
+def list_(what: str, name: str | None, as_json: bool) -> None:
+    """List what comes with the package, or say all about one NAME."""
+    from tenkpc.show import catalogue
+
+    click.echo(catalogue.as_json(what, name) if as_json else catalogue.as_text(what, name))
+
+
+def _load(module: str, name: str) -> Any:
+    return getattr(import_module(module), name)
+
+
+def _is_path(name: str) -> bool:
+    return name.endswith(".toml") or os.sep in name or Path(name).is_file()
+
+
+def _detector(name: str) -> Detector:
+    """Load a detector file, or take a detector of the gallery."""
+    kind = _load("tenkpc.detector.detector", "Detector")
+    made: Detector = kind.load(name) if _is_path(name) else kind.gallery(name)
+    return made
+
+
+def _burst(name: str) -> Burst:
+    """Load a burst file, or take a preset."""
+    kind = _load("tenkpc.source.burst", "Burst")
+    made: Burst = kind.load(name) if _is_path(name) else kind.preset(name)
+    return made
+
+
+def _only(keys: Sequence[str]) -> dict[str, bool]:
+    """Switch every interaction off but the named ones; none named leaves all as they are."""
+    if not keys:
+        return {}
+    from tenkpc import interactions
+
+    for key in keys:
+        interactions.by_key(key)
+    return {key: False for key in interactions.KEYS if key not in keys}
+
+
+def _as_file(made: Forecast, path: Path) -> str:
+    from tenkpc import rendering
+    from tenkpc.forecast import page
+
+    match path.suffix:
+        case ".txt":
+            return repr(made) + "\n"
+        case ".html":
+            head = '<!doctype html><meta charset="utf-8"><title>tenkpc</title>'
+            return head + rendering.html(page.results(made)) + "\n"
+        case ".json":
+            return made.to_json() + "\n"
+        case ".csv":
+            lines = (f"# {line}".rstrip() for line in made.explain().splitlines())
+            return "\n".join([*lines, made.counts.to_csv()])
+        case _:
+            message = (
+                f"--out: expected a name that ends in .txt, .html, .json or .csv; found {path}"
+            )
+            raise InputError(message)
+
+
+def _write(path: Path, text: str) -> None:
+    """Write a file so that it is there whole or not at all."""
+    try:
+        handle, name = tempfile.mkstemp(dir=path.parent, prefix=f".{path.name}.")
+        with os.fdopen(handle, "w", encoding="utf-8") as file:
+            file.write(text)
+        Path(name).chmod(0o644)
+        Path(name).replace(path)
+    except OSError as error:
+        message = f"--out: cannot write {path}: {error.strerror or error}"
+        raise InputError(message) from None
+
+
+if __name__ == "__main__":
+    sys.exit(main())

@@ -1,0 +1,98 @@
+"""What users hand to a forecast, checked and turned into floats."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from typing import Any
+
+import numpy as np
+from numpy.typing import NDArray
+
+from tenkpc import units
+from tenkpc.errors import InputError
+
+Floats = NDArray[np.float64]
+Quantity = Any  # a text such as "10 kpc" or a pint quantity
+Window = tuple[float, float]
+
+# bins at the most: 0.1 ms steps over 80 s
+MOST_BINS = 1_000_000
+# bins of observed energy unless others are asked for, MeV: width and last edge
+BIN_WIDTH_MEV, LAST_EDGE_MEV = 2.0, 100.0
+
+
+def distance_kpc(distance: Quantity, argument: str = "distance") -> float:
+    """Give a distance in kpc; it must be more than zero."""
+    value = units.to_float(distance, "kpc", argument, "10 kpc")
+    if value <= 0:
+        message = f"{argument}: expected more than zero, found {distance}"
+        raise InputError(message)
+    return value
+
+
+def energy_above_mev(energy: Quantity) -> float:
+    """Give a cut in observed energy in MeV; it must not be negative."""
+    value = units.to_float(energy, "MeV", "energy_above", "10 MeV")
+    if value < 0:
+        message = f"energy_above: expected zero or more, found {energy}"
+        raise InputError(message)
+    return value
+
+
+def window_s(time: tuple[Quantity, Quantity], burst: Window) -> Window:
+    """Give the part of a window of time that lies within the burst, s."""
+    if not _is_sequence(time) or len(time) != 2:
+        message = f'time: expected a first and a last time, ("0 s", "1 s"), found {time!r}'
+        raise InputError(message)
+    start, end = (units.to_float(t, "s", "time", "1 s") for t in time)
+    low, high = max(start, burst[0]), min(end, burst[1])
+    if low >= high:
+        message = (
+            f"time: no part of {start:g} s to {end:g} s lies within the burst, "
+            f"which runs from {burst[0]:g} s to {burst[1]:g} s"
+        )
+        raise InputError(message)
+    return low, high
+
+
+def time_edges_s(bins: Quantity | Sequence[Quantity], span: Window) -> Floats:
+    """Edges of bins of time in s: as given, or multiples of a width that cover the span."""
+    if _is_sequence(bins):
+        return _ascending([units.to_float(t, "s", "bins", "20 ms") for t in bins])
+    width = units.to_float(bins, "s", "bins", "20 ms")
+    if not 0 < (span[1] - span[0]) <= MOST_BINS * width:
+        message = f"bins: expected a width that makes at most {MOST_BINS} bins, found {bins}"
+        raise InputError(message)
+    first, last = np.floor(span[0] / width + 1e-9), np.ceil(span[1] / width - 1e-9)
+    return np.arange(first, last + 1) * width
+
+
+def energy_edges_mev(bins: Quantity | Sequence[Quantity] | None) -> tuple[float, ...]:
+    """Edges of bins of energy in MeV, from zero: as given, or multiples of a width."""
+    if bins is None:
+        width = BIN_WIDTH_MEV
+    elif _is_sequence(bins):
+        edges = _ascending([units.to_float(e, "MeV", "bins", "1 MeV") for e in bins])
+        if edges[0] < 0:
+            message = "bins: an energy cannot be negative"
+            raise InputError(message)
+        return tuple(edges.tolist()) if edges[0] == 0 else (0.0, *edges.tolist())
+    else:
+        width = units.to_float(bins, "MeV", "bins", "1 MeV")
+    if not 0.01 <= width <= LAST_EDGE_MEV:
+        message = f"bins: expected a width between 0.01 and {LAST_EDGE_MEV:g} MeV, found {bins}"
+        raise InputError(message)
+    count = int(np.floor(LAST_EDGE_MEV / width + 1e-9))
+    return tuple((np.arange(count + 1) * width).tolist())
+
+
+def _is_sequence(value: object) -> bool:
+    return isinstance(value, Sequence | np.ndarray) and not isinstance(value, str)
+
+
+def _ascending(edges: Sequence[float]) -> Floats:
+    array = np.array(edges, dtype=float)
+    if len(array) < 2 or np.any(np.diff(array) <= 0):
+        message = "bins: expected at least two edges in ascending order"
+        raise InputError(message)
+    return array

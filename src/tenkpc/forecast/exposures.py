@@ -1,0 +1,69 @@
+"""Which interactions a detector's targets are exposed to, compiled once per detector."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import replace
+from functools import lru_cache
+
+import numpy as np
+from numpy.typing import NDArray
+
+from tenkpc import interactions
+from tenkpc.detector.detector import Detector
+from tenkpc.forecast.compiled import Compiled, Exposure, by_neutrino_energy, compile_rows
+from tenkpc.forecast.grid import EnergyGrid
+
+Floats = NDArray[np.float64]
+Choices = tuple[tuple[str, bool | float | str], ...]
+
+
+def choices(detector: Detector, further: Mapping[str, bool | float | str]) -> Choices:
+    """Switches, factors and options of the detector file, overruled by further ones."""
+    return tuple(sorted({**detector.interactions, **further}.items()))
+
+
+def exposures(
+    detector: Detector, chosen: Choices, energy_above_mev: float | None
+) -> tuple[Exposure, ...]:
+    """List every interaction that the detector's volumes hold targets for."""
+    response = detector.response
+    if energy_above_mev is not None:
+        cut = max(response.threshold_mev, energy_above_mev)
+        response = replace(response, threshold_mev=cut)
+    made = []
+    for volume in detector.volumes:
+        for key in interactions.KEYS:
+            value = dict(chosen).get(key, True)
+            interaction = interactions.by_key(key, value if isinstance(value, str) else None)
+            scale = 1.0 if isinstance(value, bool | str) else value
+            targets = volume.targets(interaction.target) * scale
+            if value is not False and targets > 0:
+                made.append(Exposure(volume.name, targets, interaction, response))
+    return tuple(made)
+
+
+@lru_cache(maxsize=32)
+def compiled(
+    detector: Detector,
+    chosen: Choices,
+    energy_above_mev: float | None,
+    grid: EnergyGrid,
+    edges_mev: tuple[float, ...],
+) -> Compiled:
+    """Compile a detector, or remember that it was compiled before."""
+    made = exposures(detector, chosen, energy_above_mev)
+    return compile_rows(made, grid, np.array(edges_mev))
+
+
+@lru_cache(maxsize=8)
+def compiled_by_neutrino_energy(
+    detector: Detector,
+    chosen: Choices,
+    energy_above_mev: float | None,
+    grid: EnergyGrid,
+    edges_mev: tuple[float, ...],
+) -> Floats:
+    """Compile the counted events by bin of neutrino energy, (rows, nodes, bins + 1)."""
+    made = exposures(detector, chosen, energy_above_mev)
+    return by_neutrino_energy(made, grid, np.array(edges_mev))

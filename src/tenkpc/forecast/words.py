@@ -1,0 +1,140 @@
+"""A forecast in words: what was asked, what was assumed, and how to ask it again."""
+
+from __future__ import annotations
+
+import shlex
+from collections.abc import Iterator
+from typing import TYPE_CHECKING
+
+from tenkpc.detector.response import Curve, Resolution
+from tenkpc.rendering import decimals_for, number, percent
+
+if TYPE_CHECKING:
+    from tenkpc.forecast.forecast import Forecast
+
+Assumption = tuple[str, str, str]
+
+
+def opening(forecast: Forecast) -> str:
+    """Say in one sentence what was counted, where, and of what."""
+    detector = forecast.detector
+    total = number(forecast.total, decimals_for(forecast.total))
+    return (
+        f"{detector.title} ({mass(detector.mass_kg)}, {detector.medium}) counts {total} events "
+        f"of “{forecast.burst.title}” at {distance(forecast.distance_kpc)}, with "
+        f"{forecast.conversion.describe()}{_window(forecast)}. {_counted(forecast)}"
+    )
+
+
+def _window(forecast: Forecast) -> str:
+    if forecast.window_s is None:
+        return ""
+    start, end = forecast.window_s
+    return f", between {start:g} s and {end:g} s after bounce"
+
+
+def _counted(forecast: Forecast) -> str:
+    response = forecast.detector.response
+    losses = [] if _is_unity(response.efficiency) else ["efficiency"]
+    losses += [] if _is_unity(response.true_efficiency) else ["efficiency in true energy"]
+    losses += [] if response.live_fraction == 1 else ["live time"]
+    kept = f", kept by {' and '.join(losses)}" if losses else ""
+    return f"Counted means: {threshold(forecast)}{kept}."
+
+
+def threshold(forecast: Forecast) -> str:
+    """Say above which energy, and of which kind, an event must be observed."""
+    response = forecast.detector.response
+    lowest = max(response.threshold_mev, forecast.energy_above_mev or 0.0)
+    kind = f"{response.kind} energy"
+    if lowest <= 0:
+        return f"observed at any {kind}"
+    return f"observed {kind} of at least {lowest:.4g} MeV"
+
+
+def mass(mass_kg: float) -> str:
+    """Print a mass in the unit that suits it, metric throughout."""
+    for unit, kilograms in (("kt", 1e6), ("t", 1e3), ("kg", 1.0)):
+        if mass_kg >= kilograms:
+            return f"{mass_kg / kilograms:.4g} {unit}"
+    return f"{mass_kg * 1e3:.4g} g"
+
+
+def distance(distance_kpc: float) -> str:
+    """Print a distance in the unit that suits it."""
+    for unit, kpc in (("Mpc", 1e3), ("kpc", 1.0), ("pc", 1e-3)):
+        if distance_kpc >= kpc:
+            return f"{distance_kpc / kpc:.4g} {unit}"
+    return f"{distance_kpc * 1e3:.4g} pc"
+
+
+def resolution(width: Resolution) -> str:
+    """Print the terms of a resolution that are not zero."""
+    terms = [
+        (width.stochastic, f"{width.stochastic:g}/√(E/MeV)"),
+        (width.constant, f"{width.constant:g}"),
+        (width.noise_mev, f"{width.noise_mev:g} MeV/E"),
+    ]
+    sign = " + " if width.linear else " ⊕ "
+    return (
+        "σ/E = " + sign.join(text for value, text in terms if value)
+        if any(value for value, _ in terms)
+        else "perfect"
+    )
+
+
+def curve(efficiency: Curve) -> str:
+    """Print an efficiency: its value, or its range."""
+    if efficiency.is_constant:
+        return percent(efficiency.values[0])
+    first, last = efficiency.knots_mev[0], efficiency.knots_mev[-1]
+    low, high = percent(efficiency.values[0]), percent(efficiency.values[-1])
+    return f"{low} at {first:g} MeV to {high} at {last:g} MeV"
+
+
+def assumptions(forecast: Forecast) -> Iterator[Assumption]:
+    """List every assumption: what, its value, and whether it was given or is a default."""
+    yield from _of_detector(forecast)
+    yield "burst", forecast.burst.title, forecast.burst.origin
+    yield "distance", distance(forecast.distance_kpc), "given"
+    yield "flavour conversion", forecast.conversion.describe(), "see sources"
+    start, end = forecast.window_s or (forecast.burst.start_s, forecast.burst.end_s)
+    if not forecast.burst.time_integrated:
+        origin = "given" if forecast.window_s else "the whole burst"
+        yield "time window", f"{start:g} s to {end:g} s", origin
+    if forecast.energy_above_mev is not None:
+        yield "only above", f"{forecast.energy_above_mev:g} MeV observed", "given"
+
+
+def _of_detector(forecast: Forecast) -> Iterator[Assumption]:
+    detector = forecast.detector
+    response, given = detector.response, detector.stated
+    for volume in detector.volumes:
+        yield f"volume {volume.name}", f"{volume.mass_kg:.6g} kg {volume.material}", detector.origin
+        yield "  free protons", f"{volume.targets('H-1'):.4g}", "composition"
+        yield "  electrons", f"{volume.targets('electron'):.4g}", "composition"
+    rows = (
+        ("energy", "observed energy", f"{response.kind} energy"),
+        ("threshold", "threshold", threshold(forecast)),
+        ("resolution", "resolution", resolution(response.resolution)),
+        ("efficiency", "efficiency", curve(response.efficiency)),
+        ("live_fraction", "live fraction", percent(response.live_fraction)),
+    )
+    for key, name, value in rows:
+        yield name, value, detector.origin if key in given else "default"
+
+
+def command(forecast: Forecast) -> str:
+    """Give the shell command that prints the page again."""
+    words = ["tenkpc", "forecast", forecast.detector.origin]
+    words += ["--burst", forecast.burst.origin]
+    words += ["--distance", f"{forecast.distance_kpc:.12g} kpc", *forecast.conversion.options()]
+    if forecast.window_s is not None:
+        words += ["--between", *(f"{t:.12g} s" for t in forecast.window_s)]
+    changed = [*forecast.detector.changes, *forecast.burst.changes, *forecast.interactions.items()]
+    note = f"  (with {', '.join(f'{k} = {v}' for k, v in changed)})" if changed else ""
+    return shlex.join(words) + note
+
+
+def _is_unity(efficiency: Curve) -> bool:
+    return efficiency.is_constant and efficiency.values[0] == 1.0

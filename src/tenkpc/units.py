@@ -1,0 +1,194 @@
+"""Units at the door: the only module that knows pint.
+
+Quantities come in as texts such as ``"10 kpc"`` or as pint quantities of any registry, and
+leave as floats in a stated unit. Nothing is defined in the registry, which is pint's
+application registry; tons are therefore translated here, where a mass is due:
+
+* ``kt``, ``kton``, ``kiloton``, ``Mt``, ``Mton``, ``megaton`` are metric. Left alone pint reads
+  ``kt`` as a knot and ``kton`` as a thousand US short tons, 9.3 % less.
+* a bare ``ton`` is refused, since it may mean three things.
+"""
+
+from __future__ import annotations
+
+import math
+import re
+from functools import lru_cache
+from typing import TYPE_CHECKING, Any, cast
+
+from tenkpc.errors import UnitError
+
+if TYPE_CHECKING:
+    import pint
+
+_METRIC = {
+    "kt": "kilotonne",
+    "kton": "kilotonne",
+    "ktons": "kilotonne",
+    "kiloton": "kilotonne",
+    "kilotons": "kilotonne",
+    "Mt": "megatonne",
+    "Mton": "megatonne",
+    "Mtons": "megatonne",
+    "megaton": "megatonne",
+    "megatons": "megatonne",
+}
+_AMBIGUOUS = {"ton", "tons"}
+_SHORT_TONS = re.compile(r"\b(\w*?)(short_ton|ton)\b")
+# the words for dimensions that the messages use
+_DIMENSIONS = {
+    "[mass]": "a mass",
+    "[length]": "a length",
+    "[time]": "a time",
+    "1 / [time]": "a rate",
+    "[length] / [time]": "a speed",
+    "[length] ** 2 * [mass] / [time] ** 2": "an energy",
+    "[length] ** 2 * [mass] / [time] ** 3": "a luminosity",
+    "[mass] / [length] ** 3": "a density",
+    "[length] ** 2": "an area",
+    "[length] ** 3": "a volume",
+    "dimensionless": "a plain number",
+}
+
+
+@lru_cache(maxsize=1)
+def registry() -> Any:
+    """Give pint's application registry, the one that other code of the process uses too."""
+    import pint
+
+    return pint.get_application_registry()  # type: ignore[no-untyped-call]
+
+
+def to_float(value: object, unit: str, argument: str, example: str) -> float:
+    """Convert a text or quantity to a float in ``unit``.
+
+    Parameters
+    ----------
+    value
+        such as ``"10 kpc"``, or a pint quantity of any registry.
+    unit
+        the unit of the result, in pint's words.
+    argument, example
+        what the value is called, and a good value: both for the message.
+
+    Raises
+    ------
+    UnitError
+        where the unit is missing, unknown or of another dimension, or the number not finite.
+    """
+    if isinstance(value, str):
+        quantity = _read(value, unit, argument, example)
+    elif hasattr(value, "magnitude") and hasattr(value, "units"):
+        quantity = _foreign(value, unit, argument, example)
+    else:
+        found = f"found {value!r}"
+        message = f"{argument}: expected a value with its unit, {_quote(example)}; {found}"
+        raise UnitError(message)
+    return _converted(quantity, unit, argument, example, shown=str(value))
+
+
+def to_fraction(value: object, argument: str) -> float:
+    """Convert ``0.94`` or ``"94 %"`` to a share between 0 and 1.
+
+    Raises
+    ------
+    UnitError
+        where the value is no share: ``95`` and ``"95"`` are refused, ``"95 %"`` is meant.
+    """
+    expected = 'expected a share between 0 and 1, or per cent, such as 0.94 or "94 %"'
+    if isinstance(value, bool) or not isinstance(value, int | float | str):
+        message = f"{argument}: {expected}; found {value!r}"
+        raise UnitError(message)
+    words = str(value).strip()
+    scale = 0.01 if words.endswith("%") else 1.0
+    try:
+        share = float(words.removesuffix("%")) * scale
+    except ValueError:
+        message = f"{argument}: {expected}; found {value!r}"
+        raise UnitError(message) from None
+    if not 0 <= share <= 1:
+        hint = f'; did you mean "{words} %"?' if scale == 1.0 and 1 < share <= 100 else ""
+        message = f"{argument}: {expected}; found {value!r}{hint}"
+        raise UnitError(message)
+    return share
+
+
+def quantity(value: float, unit: str) -> pint.Quantity[float]:
+    """Give a float its unit back, for whoever wants to go on with quantities."""
+    return cast("pint.Quantity[float]", registry().Quantity(value, unit))
+
+
+def _quote(example: str) -> str:
+    return f'such as "{example}"'
+
+
+def _is_mass(unit: str) -> bool:
+    return bool(registry().Unit(unit).dimensionality == {"[mass]": 1})
+
+
+def _read(text: str, unit: str, argument: str, example: str) -> Any:
+    """Read a text; where a mass is due, tons are metric."""
+    import pint
+
+    words = text.strip()
+    if _is_mass(unit):
+        names = set(re.findall(r"[A-Za-z]+", words))
+        if names & _AMBIGUOUS:
+            choices = "tonne (1000 kg), short_ton (907 kg) or long_ton (1016 kg)"
+            message = f"{argument}: a ton may be several things; write {choices}: {text!r}"
+            raise UnitError(message)
+        words = re.sub(r"[A-Za-z]+", lambda m: _METRIC.get(m[0], m[0]), words)
+    try:
+        read = registry().Quantity(words)
+    except pint.UndefinedUnitError as error:
+        name = ", ".join(str(part) for part in error.args)
+        hint = f"unknown unit {name!r} in {text!r}"
+        message = f"{argument}: {hint}; expected a value {_quote(example)}"
+        raise UnitError(message) from None
+    except Exception:  # pint's parser raises whatever its tokenizer met
+        message = f"{argument}: cannot read {text!r}; expected a value {_quote(example)}"
+        raise UnitError(message) from None
+    if read.dimensionless and not registry().Unit(unit).dimensionless:
+        if not read.unitless:
+            return read
+        message = f"{argument}: {text!r} lacks its unit; expected a value {_quote(example)}"
+        raise UnitError(message)
+    return read
+
+
+def _foreign(value: Any, unit: str, argument: str, example: str) -> Any:
+    """Take a quantity of any registry, unless its unit is one of the tempting wrong ones."""
+    units = str(value.units)
+    if _is_mass(unit) and _SHORT_TONS.search(units) and "tonne" not in units:
+        message = f"{argument}: {value} counts US short tons of 907 kg; give tonnes or kilograms"
+        message = f"{message}, {_quote(example)}"
+        raise UnitError(message)
+    return value
+
+
+def _converted(value: Any, unit: str, argument: str, example: str, *, shown: str) -> float:
+    import pint
+
+    try:
+        number = float(value.to(unit).magnitude)
+    except pint.DimensionalityError:
+        raise UnitError(_wrong_dimension(value, unit, argument, example, shown)) from None
+    except (TypeError, ValueError):
+        message = f"{argument}: expected one number, {_quote(example)}; found {shown!r}"
+        raise UnitError(message) from None
+    if not math.isfinite(number):
+        message = f"{argument}: expected a finite number, {_quote(example)}; found {shown!r}"
+        raise UnitError(message)
+    return number
+
+
+def _wrong_dimension(value: Any, unit: str, argument: str, example: str, shown: str) -> str:
+    found = _dimension(value.dimensionality)
+    expected = _dimension(registry().Unit(unit).dimensionality)
+    knot = "; a knot? write kilotonne for kt" if "knot" in str(value.units) else ""
+    return f"{argument}: {shown!r} is {found}; expected {expected}, {_quote(example)}{knot}"
+
+
+def _dimension(dimensionality: Any) -> str:
+    words = str(dimensionality)
+    return _DIMENSIONS.get(words, f"of dimension {words}")
