@@ -27,6 +27,13 @@ class Paragraph:
 
 
 @dataclass(frozen=True)
+class Facts:
+    """Names with a text each, which runs on beside its name."""
+
+    rows: tuple[tuple[str, str], ...]
+
+
+@dataclass(frozen=True)
 class Rule:
     """A thin line across the page."""
 
@@ -58,7 +65,7 @@ class Table:
     titles: tuple[str, ...] = ()
 
 
-Block = Paragraph | Rule | Table
+Block = Facts | Paragraph | Rule | Table
 Page = Sequence[Block]
 
 
@@ -110,6 +117,8 @@ def _text_block(block: Block, width: int) -> str:
     match block:
         case Paragraph():
             return "\n".join(_wrap(block.text, width))
+        case Facts():
+            return "\n".join(_text_facts(block, width))
         case Rule():
             return "─" * width
         case Table():
@@ -120,6 +129,16 @@ def _wrap(words: str, width: int) -> list[str]:
     """Wrap at blanks only, so that commands and units stay whole."""
     lines = textwrap.wrap(words, width, break_long_words=False, break_on_hyphens=False)
     return lines or [""]
+
+
+def _text_facts(facts: Facts, width: int) -> list[str]:
+    first = max((columns_of(name) for name, _ in facts.rows), default=0) + 2
+    lines = []
+    for name, words in facts.rows:
+        head, *rest = _wrap(words, width - first)
+        lines.append((pad(name, first) + head).rstrip())
+        lines += [" " * first + line for line in rest]
+    return lines
 
 
 def _text_table(table: Table, width: int) -> list[str]:
@@ -151,6 +170,10 @@ def _html_block(block: Block) -> str:
         case Paragraph():
             size = ";font-size:85%;opacity:.8" if block.small else ""
             return f'<p style="margin:.4em 0{size}">{_html.escape(block.text)}</p>'
+        case Facts():
+            pairs = (f"<dt>{_html.escape(n)}</dt><dd>{_html.escape(t)}</dd>" for n, t in block.rows)
+            style = "display:grid;grid-template-columns:max-content auto;gap:.1em 1em;margin:.4em 0"
+            return f'<dl style="{style}">{"".join(pairs)}</dl>'
         case Rule():
             return '<hr style="border:0;border-top:1px solid;opacity:.4">'
         case Table():

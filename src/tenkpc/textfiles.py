@@ -49,6 +49,8 @@ __all__ = [
 # no description of a detector or a burst is longer, and no table of an efficiency either
 MOST_BYTES = 4_000_000
 
+MISSING = "required key is missing"
+
 Model = TypeVar("Model", bound="Strict")
 
 
@@ -154,8 +156,8 @@ def read_text(path: str | Path) -> str:
         raise _unreadable(place, f"no such file{_nearest(place)}") from None
     except UnicodeDecodeError:
         raise _unreadable(place, "not a text in UTF-8") from None
-    except (OSError, ValueError) as error:
-        raise _unreadable(place, f"cannot be read: {error}") from None
+    except OSError as error:
+        raise _unreadable(place, f"cannot be read: {error.strerror or error}") from None
 
 
 def document(text: str, origin: str) -> dict[str, Any]:
@@ -279,7 +281,8 @@ def _nearest(place: Path) -> str:
 
 def _problem(text: str, line: int, path: str, message: str) -> Problem:
     lines = text.splitlines()
-    excerpt = lines[line - 1].strip() if 0 < line <= len(lines) else ""
+    shown = 0 < line <= len(lines) and message != MISSING
+    excerpt = lines[line - 1].strip() if shown else ""
     return Problem(line, path, message, excerpt[:100])
 
 
@@ -294,7 +297,7 @@ def _explained(
         case "sentence":
             return path, str(context["words"])
         case "missing":
-            return path, "required key is missing"
+            return path, MISSING
         case "extra_forbidden":
             known = _known_keys(model, tables, path[:-1])
             hint = suggestion(str(path[-1]), known)
@@ -308,9 +311,9 @@ def _explained(
             hint = suggestion(str(value), words)
             return place, f"expected one of {', '.join(words)}; found {value!r}{hint}"
         case "union_tag_not_found":
-            return (*path, "kind"), "required key is missing"
+            return (*path, "kind"), MISSING
         case _:
-            return path, f"{_PLAIN.get(kind, detail['message']).format(**context)}{found}"
+            return path, f"{_PLAIN.get(kind, detail['msg']).format(**context)}{found}"
 
 
 _ABSENT = {"missing", "extra_forbidden"}

@@ -112,7 +112,7 @@ class DetectorKeys(Strict):
 
     title: Annotated[str, Field(min_length=1)]
     about: str = ""
-    volume: Annotated[tuple[VolumeKeys, ...], Field(min_length=1)]
+    volume: tuple[VolumeKeys, ...]
     response: ResponseKeys
     interactions: dict[str, bool | float | str] = Field(default_factory=dict)
 
@@ -121,6 +121,8 @@ class DetectorKeys(Strict):
         """Check that names of volumes differ and interactions exist, with options they have."""
         seen: set[str] = set()
         volumes = raw.get("volume")
+        if volumes == []:
+            yield ("volume",), "expected at least one volume"
         for place, volume in enumerate(volumes if isinstance(volumes, list) else []):
             name = volume.get("name") if isinstance(volume, dict) else None
             if isinstance(name, str) and name in seen:

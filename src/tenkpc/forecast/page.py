@@ -13,6 +13,7 @@ from tenkpc.forecast import words
 from tenkpc.forecast.conversions import others
 from tenkpc.rendering import (
     Block,
+    Facts,
     Page,
     Paragraph,
     Row,
@@ -54,13 +55,20 @@ def results(forecast: Forecast) -> Page:
 
 def assumptions(forecast: Forecast) -> Page:
     """Lay out what went into a forecast, with the origin of every value."""
-    rows = tuple(Row(cells) for cells in words.assumptions(forecast))
-    sources = [
-        Paragraph(f"{key}: {'; '.join(str(r) for r in interactions.by_key(key).references)}")
+    facts = tuple(
+        (name, f"{value} ({origin})") for name, value, origin in words.assumptions(forecast)
+    )
+    sources = tuple(
+        (key, "; ".join(f"{r}, for {r.used_for}" for r in interactions.by_key(key).references))
         for key in forecast.keys
+    )
+    return [
+        Paragraph(words.opening(forecast)),
+        Paragraph(""),
+        Facts(facts),
+        Rule(),
+        Facts(sources),
     ]
-    table = Table(rows, ("assumption", "value", "from"))
-    return [Paragraph(words.opening(forecast)), Paragraph(""), table, Rule(), *sources]
 
 
 def _chain(forecast: Forecast) -> Block:
@@ -98,19 +106,21 @@ def _seen(forecast: Forecast) -> Block:
 
 def _uncertainty(forecast: Forecast) -> Block:
     total, chance = forecast.total, forecast.chance
+    scale = total or 1.0
     fall, rise = forecast.cross_section_error
-    decimals = decimals_for(total)
-    factors = [f"× {other.total / (total or 1):.2f} {name}" for name, other in others(forecast)]
+    decimals = decimals_for(max(fall, rise))
+    factors = [f"× {other.total / scale:.2f} {name}" for name, other in others(forecast)]
+    width = percent(0.5 * (chance.high - chance.low) / scale)
     rows = (
-        ("chance", f"{number(chance.low)} to {number(chance.high)} in 68 % of such bursts"),
+        ("chance", f"{number(chance.low)} to {number(chance.high)} in 68 % of bursts, ± {width}"),
         (
             "cross sections",
-            f"− {number(fall, decimals)} + {number(rise, decimals)}"
-            f"  (− {percent(fall / (total or 1))} + {percent(rise / (total or 1))})",
+            f"− {number(fall, decimals)} + {number(rise, decimals)} in 68 % of cases,"
+            f" − {percent(fall / scale)} + {percent(rise / scale)}",
         ),
-        ("other conversions", " · ".join(factors)),
+        ("other conversions", ", ".join(factors)),
     )
-    return Table(tuple(Row(cells) for cells in rows))
+    return Facts(rows)
 
 
 def _warnings(forecast: Forecast) -> list[str]:

@@ -12,6 +12,9 @@ from tenkpc.rendering import decimals_for, number, percent
 if TYPE_CHECKING:
     from tenkpc.forecast.forecast import Forecast
 
+# what light or charge a medium is seen by
+MEDIA = {"cherenkov": "Cherenkov light"}
+
 Assumption = tuple[str, str, str]
 
 
@@ -20,10 +23,17 @@ def opening(forecast: Forecast) -> str:
     detector = forecast.detector
     total = number(forecast.total, decimals_for(forecast.total))
     return (
-        f"{detector.title} ({mass(detector.mass_kg)}, {detector.medium}) counts {total} events "
-        f"of “{forecast.burst.title}” at {distance(forecast.distance_kpc)}, with "
+        f"{detector.title}, {_filling(forecast)}, counts {total} events "
+        f"of the burst “{forecast.burst.title}” at {distance(forecast.distance_kpc)}, with "
         f"{forecast.conversion.describe()}{_window(forecast)}. {_counted(forecast)}"
     )
+
+
+def _filling(forecast: Forecast) -> str:
+    """Say what is in the detector and how it sees: ``40 kt light water, by Cherenkov light``."""
+    detector = forecast.detector
+    parts = [f"{mass(volume.mass_kg)} {volume.material}" for volume in detector.volumes]
+    return f"{' and '.join(parts)} seen by {MEDIA[detector.medium]}"
 
 
 def _window(forecast: Forecast) -> str:
@@ -97,7 +107,7 @@ def assumptions(forecast: Forecast) -> Iterator[Assumption]:
     yield from _of_detector(forecast)
     yield "burst", forecast.burst.title, forecast.burst.origin
     yield "distance", distance(forecast.distance_kpc), "given"
-    yield "flavour conversion", forecast.conversion.describe(), "see sources"
+    yield "flavour conversion", forecast.conversion.describe(), "given, or the default"
     start, end = forecast.window_s or (forecast.burst.start_s, forecast.burst.end_s)
     if not forecast.burst.time_integrated:
         origin = "given" if forecast.window_s else "the whole burst"

@@ -12,7 +12,7 @@ from tenkpc import interactions
 from tenkpc.detector import gallery, materials
 from tenkpc.detector.detector import Detector
 from tenkpc.errors import UnknownNameError
-from tenkpc.rendering import Page, Paragraph, Row, Table, columns_of, pad, percent, text
+from tenkpc.rendering import Facts, Page, Paragraph, columns_of, pad, percent, text
 from tenkpc.source.burst import Burst
 from tenkpc.species import SPECIES, SYMBOLS
 
@@ -86,8 +86,7 @@ def _interaction(key: str) -> Page:
         *_cross_sections(key),
     ]
     references = [Paragraph(f"{r}: {r.used_for}", small=True) for r in interaction.references]
-    facts = Table(tuple(Row(cells) for cells in rows))
-    return [Paragraph(interaction.equation), facts, *references]
+    return [Paragraph(interaction.equation), Facts(tuple(rows)), *references]
 
 
 def _cross_sections(key: str) -> list[tuple[str, str]]:

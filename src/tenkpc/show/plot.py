@@ -31,6 +31,10 @@ FOOT_SIZE = 7
 LABEL_SIZE = 9
 # what is drawn of a spectrum: up to where this share of the counts is left
 TAIL = 1e-4
+# depth of a light curve, as a share of its peak: the rarest interactions are to be seen
+DEPTH = 3e-4
+# labels at the end of a line are at least so far apart, as a share of the panel's height
+LABELS_APART = 0.24
 # edges of the light curve, s: fine at the peak of the electron neutrinos, coarse in the tail
 TIME_EDGES_S = np.unique(
     np.round(
@@ -88,7 +92,7 @@ def spectrum(
         _factors(below, totals, heights[-1], edges, last)
     lowest.set_xlabel(f"observed {forecast.detector.response.kind} energy [MeV]")
     lowest.set_xlim(0, edges[last])
-    _foot(main, forecast)
+    _foot(below or main, forecast)
     return main
 
 
@@ -123,9 +127,7 @@ def light_curve(
         main.stairs(rate, edges, color=_colour(rank), linewidth=_weight(rank), baseline=None)
     names = ["all", *ranked] if len(ranked) > 1 else ranked
     main.set_yscale("log")
-    main.set_ylim(
-        max(total.max() * TAIL, min(rate.max() for rate in rates) * 1e-2), total.max() * 3
-    )
+    main.set_ylim(total.max() * DEPTH, total.max() * 3)
     main.set_ylabel("events / s, in bins of their own width")
     _name_curves(main, names, curves, edges)
     if below is not None:
@@ -138,7 +140,7 @@ def light_curve(
         axes.set_xscale("symlog", linthresh=0.1, linscale=1.5)
         axes.set_xlim(edges[0], edges[-1])
     _time_ticks(below or main)
-    _foot(main, forecast)
+    _foot(below or main, forecast)
     return main
 
 
@@ -229,25 +231,34 @@ def _factors(
     ax: Axes, totals: Sequence[tuple[str, Floats]], own: Floats, edges: Floats, last: int
 ) -> None:
     """Draw other conversions relative to this one, each line named at its right end."""
-    reach = []
-    for rank, (name, other) in enumerate(totals):
-        factor = np.divide(other, own, out=np.full_like(own, np.nan), where=own > own.max() * TAIL)
-        ax.stairs(factor, edges, color=_colour(rank + 2), linewidth=1.2, baseline=None)
-        known = np.flatnonzero(np.isfinite(factor[:last]))
-        reach += [factor[known].min(), factor[known].max()]
-        ax.annotate(
-            name,
-            (1.0, factor[known[-1]]),
-            xytext=(4, 0),
-            xycoords=("axes fraction", "data"),
-            textcoords="offset points",
-            fontsize=FOOT_SIZE,
-            va="center",
-        )
+    curves = [
+        np.divide(other, own, out=np.full_like(own, np.nan), where=own > own.max() * TAIL)
+        for _, other in totals
+    ]
+    known = np.array([curve[:last][np.isfinite(curve[:last])] for curve in curves])
+    margin = 0.08 * (known.max() - known.min() + 0.1)
+    low, high = known.min() - margin, known.max() + margin
+    for rank, curve in enumerate(curves):
+        ax.stairs(curve, edges, color=_colour(rank + 2), linewidth=1.2, baseline=None)
+    heights = _apart((known[:, -1] - low) / (high - low), LABELS_APART)
+    for (name, _), height in zip(totals, heights, strict=True):
+        offset: dict[str, Any] = {"xytext": (4, 0), "textcoords": "offset points", "va": "center"}
+        ax.annotate(name, (1.0, height), xycoords="axes fraction", fontsize=FOOT_SIZE, **offset)
     ax.axhline(1.0, color="0.3", linewidth=0.6)
-    margin = 0.08 * (max(reach) - min(reach) + 0.1)
-    ax.set_ylim(min(reach) - margin, max(reach) + margin)
+    ax.set_ylim(low, high)
     ax.set_ylabel("factor")
+
+
+def _apart(heights: Floats, least: float) -> Floats:
+    """Move heights apart to at least a distance, in order, around where they were."""
+    order = np.argsort(heights)
+    moved = heights[order]
+    for place in range(1, len(moved)):
+        moved[place] = max(moved[place], moved[place - 1] + least)
+    moved -= np.mean(moved - heights[order])
+    result = np.empty_like(moved)
+    result[order] = moved
+    return result
 
 
 def _shade_below_threshold(ax: Axes, forecast: Forecast) -> None:
@@ -285,9 +296,10 @@ def _width(widths: Floats, unit: str) -> str:
 
 
 def _foot(ax: Axes, forecast: Forecast) -> None:
-    """Write what was assumed as a small line at the foot of the figure."""
+    """Write what was assumed as a small line below the axis."""
     line = (
         f"{forecast.detector.title}, “{forecast.burst.title}” at "
         f"{words.distance(forecast.distance_kpc)}, {forecast.conversion.describe()}"
     )
-    ax.set_title(line, fontsize=FOOT_SIZE, loc="left", color="0.25")
+    offset: dict[str, Any] = {"xytext": (0, -38), "textcoords": "offset points", "va": "top"}
+    ax.annotate(line, (0, 0), xycoords="axes fraction", fontsize=FOOT_SIZE, color="0.25", **offset)

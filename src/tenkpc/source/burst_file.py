@@ -178,12 +178,14 @@ class BurstKeys(Strict):
     about: str = ""
     start: Time = -0.03
     end: Time = 80.0
-    component: Annotated[tuple[ComponentKeys, ...], Field(min_length=1)]
+    component: tuple[ComponentKeys, ...]
 
     @classmethod
     def cross_rules(cls, raw: Mapping[str, Any]) -> Problems:
         """Names that differ, and components that are all of one nature."""
         tables = raw.get("component")
+        if tables == []:
+            yield ("component",), "a burst needs at least one [[component]]"
         tables = [t if isinstance(t, dict) else {} for t in tables] if _is_list(tables) else []
         kinds = {str(table["kind"]) for table in tables if "kind" in table}
         names: set[object] = set()

@@ -66,7 +66,7 @@ class Peak:
     @property
     def joints_s(self) -> tuple[float, ...]:
         """The peak and a few widths around it."""
-        steps = (-8, -4, 0, 4, 10)
+        steps = (-6, 0, 5)
         widths = {-1: self.rise_time_s, 0: 0.0, 1: self.fall_time_s}
         return tuple(self.peak_time_s + n * widths[(n > 0) - (n < 0)] for n in steps)
 
