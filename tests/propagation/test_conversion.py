@@ -28,6 +28,7 @@ ALL: tuple[Conversion, ...] = (
     Survival(nu_e=0.25, anti_nu_e=0.6),
 )
 SOURCE = np.array([10.0, 8.0, 5.0, 5.0])
+# down to the smallest numbers there are: tails of a burst reach them
 fluxes = st.lists(st.floats(0, 1e60), min_size=4, max_size=4).map(np.array)
 
 
@@ -86,7 +87,7 @@ def test_six_fluxes_are_conserved(flux: np.ndarray, p: float, anti_p: float) -> 
     assert np.all(result >= 0)
     for e, x in ((0, 2), (1, 3)):
         total = flux[e] + 2 * flux[x]
-        assert abs(result[e] + 2 * result[x] - total) <= 1e-14 * total
+        assert abs(result[e] + 2 * result[x] - total) <= 1e-14 * total + 1e-300
 
 
 @given(flux=fluxes)

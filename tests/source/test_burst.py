@@ -5,7 +5,7 @@ import math
 import numpy as np
 import pint
 import pytest
-from hypothesis import given
+from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from tenkpc.errors import FileError, InputError
@@ -31,7 +31,9 @@ def test_equal_by_content(name: str) -> None:
 def test_replace_by_name() -> None:
     """Key paths go by the name of the component, and changes add up."""
     burst = Burst.preset("ordinary-collapse")
-    changed = burst.replace({"core.mean_energy.nu_e": "13 MeV"}).replace({"core.rise_time": "40 ms"})
+    changed = burst.replace({"core.mean_energy.nu_e": "13 MeV"}).replace(
+        {"core.rise_time": "40 ms"}
+    )
     assert changed.components[1].mean_energy_mev == (13.0, 12.5, 14.5, 14.5)
     assert changed.components[1].rise_time_s == pytest.approx(0.04)
     assert changed.components[0] == burst.components[0]
@@ -97,9 +99,7 @@ def test_nu_x_sets_both_and_says_so() -> None:
     burst = Burst.integrated(energy=ENERGY, mean_energy=MEAN, pinching=PINCHING)
     assert len(burst.notes) == 1
     assert "nu_x is given without anti_nu_x and sets both" in burst.notes[0]
-    spelled = [
-        {**table, "anti_nu_x": table["nu_x"]} for table in (ENERGY, MEAN, PINCHING)
-    ]
+    spelled = [{**table, "anti_nu_x": table["nu_x"]} for table in (ENERGY, MEAN, PINCHING)]
     full = Burst.integrated(energy=spelled[0], mean_energy=spelled[1], pinching=spelled[2])
     assert full.notes == ()
     assert full.components == burst.components
@@ -172,6 +172,8 @@ def test_silent_species() -> None:
     assert summary.total_energy_erg == pytest.approx(9e52, rel=1e-12)
 
 
+# each example reads a file twice; the clock of a shared machine proves nothing
+@settings(deadline=None, max_examples=25)
 @given(factor=st.floats(0.1, 10.0))
 def test_linear_in_luminosity(factor: float) -> None:
     """Twice the luminosity is twice the energy and number, at the same mean energy."""

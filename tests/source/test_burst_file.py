@@ -22,14 +22,18 @@ fall_time = "6 ms"
 mean_energy = "11 MeV"
 pinching = 3.5
 """
-CORE = """
+ACCRETION = (
+    'accretion_luminosity_each = { nu_e = "5e52 erg/s", anti_nu_e = "5e52 erg/s", '
+    'nu_x_sum_of_four = "9e52 erg/s" }'
+)
+CORE = f"""
 [[component]]
 name = "core"
 kind = "core"
 rise_time = "30 ms"
-accretion_luminosity_each = { nu_e = "5e52 erg/s", anti_nu_e = "5e52 erg/s", nu_x_sum_of_four = "9e52 erg/s" }
-mean_energy = { nu_e = "10 MeV", anti_nu_e = "12 MeV", nu_x = "14 MeV", anti_nu_x = "14.5 MeV" }
-pinching = { nu_e = 3.0, anti_nu_e = 3.5, nu_x = 2.3 }
+{ACCRETION}
+mean_energy = {{ nu_e = "10 MeV", anti_nu_e = "12 MeV", nu_x = "14 MeV", anti_nu_x = "14.5 MeV" }}
+pinching = {{ nu_e = 3.0, anti_nu_e = 3.5, nu_x = 2.3 }}
 """
 INTEGRATED = """
 [[component]]
@@ -96,7 +100,9 @@ def test_every_mistake_at_once() -> None:
 
 def test_bare_luminosity_is_refused() -> None:
     """A luminosity without a unit is refused, with an example."""
-    message = problems(PEAK.replace('"3.6e53 erg/s"', "3.6e53"))["component.peak.peak_luminosity"][1]
+    message = problems(PEAK.replace('"3.6e53 erg/s"', "3.6e53"))["component.peak.peak_luminosity"][
+        1
+    ]
     assert "4e52 erg/s" in message
 
 
@@ -109,13 +115,25 @@ def test_mixing_natures_is_refused() -> None:
 @pytest.mark.parametrize(
     ("text", "path", "words"),
     [
-        (PEAK + PEAK[PEAK.index("[[") :], "component.peak.name", "two components are called 'peak'"),
-        (PEAK.replace('kind = "peak"', 'kind = "peek"'), "component.peak.kind", "did you mean 'peak'"),
+        (
+            PEAK + PEAK[PEAK.index("[[") :],
+            "component.peak.name",
+            "two components are called 'peak'",
+        ),
+        (
+            PEAK.replace('kind = "peak"', 'kind = "peek"'),
+            "component.peak.kind",
+            "did you mean 'peak'",
+        ),
         (PEAK.replace('kind = "peak"\n', ""), "component.peak.kind", "missing"),
         ('title = "nothing"\n', "component", "missing"),
         ('title = "nothing"\ncomponent = []\n', "component", "at least one"),
         (PEAK.replace('end = "1 s"', 'end = "-1 s"'), "end", "must be later than start"),
-        (PEAK + CORE + 'accretion_time = "0.4 s"\n', "component.core.accretion_sharpness", "is missing"),
+        (
+            PEAK + CORE + 'accretion_time = "0.4 s"\n',
+            "component.core.accretion_sharpness",
+            "is missing",
+        ),
         (
             PEAK + CORE + 'accretion_time = "0.4 s"\naccretion_sharpness = 2.0\n',
             "component.core.accretion_time",
@@ -144,7 +162,9 @@ def test_mixing_natures_is_refused() -> None:
             "is missing",
         ),
         (
-            'title = "t"\n' + INTEGRATED + "pinching = { nu_e = 2.0, anti_nu_e = 2.0, nu_x = 2.0 }\n",
+            'title = "t"\n'
+            + INTEGRATED
+            + "pinching = { nu_e = 2.0, anti_nu_e = 2.0, nu_x = 2.0 }\n",
             "component.all.temperature",
             "in one way only",
         ),

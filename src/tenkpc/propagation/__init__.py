@@ -1,0 +1,1 @@
+"""What happens to neutrinos on their way from the core of the star to the detector."""

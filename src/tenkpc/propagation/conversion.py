@@ -34,6 +34,8 @@ Floats = NDArray[np.float64]
 
 # three roundings of a sum of two products, with a wide margin; a wrong formula misses by far
 CONSERVED_TO = 1e-12
+# below this, far out in a tail, numbers are too small for the full count of digits
+SMALLEST = float(np.finfo(float).tiny)
 
 
 class Conversion(Protocol):
@@ -302,7 +304,8 @@ def converted(flux: Floats, p: float, anti_p: float) -> Floats:
         result[e] = stays * flux[e] + (1 - stays) * flux[x]
         result[x] = ((1 - stays) * flux[e] + (1 + stays) * flux[x]) / 2
         lost = np.abs(result[e] + 2 * result[x] - flux[e] - 2 * flux[x])
-        if not np.all(lost <= CONSERVED_TO * (np.abs(flux[e]) + 2 * np.abs(flux[x]))):
+        scale = np.abs(flux[e]) + 2 * np.abs(flux[x])
+        if not np.all(lost <= CONSERVED_TO * scale + SMALLEST):
             kinds = f"{SPECIES[e]} and {SPECIES[x]}"
             message = (
                 f"flavour conversion did not keep the summed flux of {kinds}, or it is no number"

@@ -1,0 +1,1 @@
+"""What the star emits: spectra, the parts of a burst, and bursts."""

@@ -206,8 +206,9 @@ class Burst:
     def mean_energy(self, time_s: ArrayLike) -> Floats:
         """Mean energy in MeV, shape (4, times); not a number where nothing is emitted."""
         number, energy = self._moment(0, time_s), self._moment(1, time_s)
-        result = np.full(number.shape, np.nan)
-        return np.divide(energy, number, out=result, where=number > 0)
+        mean: Floats = np.full(number.shape, np.nan)
+        np.divide(energy, number, out=mean, where=number > 0)
+        return mean
 
     def time_panels(self) -> Floats:
         """Edges of time panels from start to end, for 8 Gauss-Legendre points each."""
@@ -232,12 +233,12 @@ class Burst:
         if self.time_integrated:
             parts = [part for part in self.components if isinstance(part, Integrated)]
             return np.array([np.sum([part.moment(n) for part in parts], axis=0) for n in orders])
-        return np.array(
-            [
-                panels.panel_integrals(lambda t, n=n: self._moment(n, t), self._panels).sum(axis=-1)
-                for n in orders
-            ]
-        )
+
+        def moments(times: Floats) -> Floats:
+            return np.concatenate([self._moment(n, times) for n in orders])
+
+        integrals = panels.panel_integrals(moments, self._panels)
+        return np.reshape(np.sum(integrals, axis=-1), (len(orders), -1))
 
     def _moment(self, order: int, time_s: ArrayLike) -> Floats:
         times = np.atleast_1d(np.asarray(time_s, float))

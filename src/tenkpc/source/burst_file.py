@@ -183,10 +183,11 @@ class BurstKeys(Strict):
     @classmethod
     def cross_rules(cls, raw: Mapping[str, Any]) -> Problems:
         """Names that differ, and components that are all of one nature."""
-        tables = raw.get("component")
-        if tables == []:
+        given = raw.get("component")
+        if given == []:
             yield ("component",), "a burst needs at least one [[component]]"
-        tables = [t if isinstance(t, dict) else {} for t in tables] if _is_list(tables) else []
+        found = given if isinstance(given, list) else []
+        tables = [table if isinstance(table, dict) else {} for table in found]
         kinds = {str(table["kind"]) for table in tables if "kind" in table}
         names: set[object] = set()
         for place, table in enumerate(tables):
@@ -197,7 +198,3 @@ class BurstKeys(Strict):
             if table.get("kind") == "integrated" and len(kinds) > 1:
                 message = "a burst is integrated over time in all its components or in none"
                 yield ("component", place, "kind"), message
-
-
-def _is_list(value: object) -> bool:
-    return isinstance(value, list | tuple)

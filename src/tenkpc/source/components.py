@@ -206,14 +206,14 @@ class Core:
         return np.asarray(np.exp(-((t / self.accretion_time_s) ** self.accretion_sharpness)))
 
     def _grown(self, t: Floats) -> Floats:
-        return np.minimum(t / self.growth_time_s, 1.0)
+        return np.asarray(np.minimum(t / self.growth_time_s, 1.0))
 
     def _gate(self, t: Floats) -> Floats:
         return np.asarray(np.exp(-np.maximum(t - self.cut_at_s, 0.0) / self.cut_fall_time_s))
 
 
 def _after_bounce(time_s: ArrayLike) -> Floats:
-    return np.maximum(np.asarray(time_s, float), 0.0)
+    return np.asarray(np.maximum(np.asarray(time_s, float), 0.0))
 
 
 def _column(values: PerSpecies) -> Floats:

@@ -64,8 +64,8 @@ def pinched_moment(order: float, mean_mev: ArrayLike, pinching: ArrayLike) -> Fl
     """
     _, mean, alpha = _pinched_arguments(0.0, mean_mev, pinching)
     if np.any(alpha + 1 + order <= 0):
-        message = f"the moment of order {order:g} of a pinched spectrum needs a pinching above it"
-        raise InputError(f"{message}: more than {-order - 1:g}")
+        message = f"a moment of order {order:g} needs a pinching of more than {-order - 1:g}"
+        raise InputError(message)
     ratio = gammaln(alpha + 1 + order) - gammaln(alpha + 1)
     moment: Floats = np.exp(order * np.log(mean / (alpha + 1)) + ratio)
     return moment
@@ -179,8 +179,11 @@ def fermi_dirac_from_pinched(mean_mev: float, pinching: float) -> tuple[float, f
         for a pinching outside 2 to 14.
     """
     if not 2 < pinching < 14:
-        message = "no Fermi-Dirac spectrum has the moments of a pinched one with pinching"
-        raise InputError(f"{message} {pinching:g}; it must lie between 2 and 14")
+        message = (
+            "no Fermi-Dirac spectrum has the moments of a pinched one with pinching "
+            f"{pinching:g}; it must lie between 2 and 14"
+        )
+        raise InputError(message)
     low, high = -36.0, 1e7
     while high - low > 1e-15 * max(1.0, abs(low), abs(high)):
         middle = 0.5 * (low + high)
