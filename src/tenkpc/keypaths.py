@@ -7,6 +7,7 @@ import json
 import re
 import tomllib
 from collections.abc import Iterable, Mapping, Sequence
+from numbers import Integral, Real
 from typing import Any
 
 from tenkpc.errors import FileError, Problem, suggestion
@@ -69,8 +70,10 @@ def as_text(value: object) -> str:
     """Write a value as TOML; a quantity becomes a text with its unit."""
     if isinstance(value, bool):
         return "true" if value else "false"
-    if isinstance(value, int | float):
-        return repr(value)
+    if isinstance(value, Integral):
+        return repr(int(value))
+    if isinstance(value, Real):
+        return repr(float(value))
     if isinstance(value, Mapping):
         return "{ " + ", ".join(f"{_quoted(k)} = {as_text(v)}" for k, v in value.items()) + " }"
     if isinstance(value, list | tuple):

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import itertools
 from types import MappingProxyType
 
 import numpy as np
@@ -24,7 +25,6 @@ from tenkpc.forecast.compiled import (
 from tenkpc.forecast.fold import fold
 from tenkpc.forecast.grid import EnergyGrid
 from tenkpc.interactions.base import FinalState, Fixed, Interaction, Shifted, Spread
-import itertools
 
 MASS = 0.511
 EDGES = np.arange(0.0, 81.0, 1.0)

@@ -37,7 +37,7 @@ Floats = NDArray[np.float64]
 # columns of the tensor; the bins of observed energy follow, then everything above the last edge
 REACTIONS, ABOVE_THRESHOLD, COUNTED_LOW, COUNTED_HIGH, COUNTED_OUTSIDE, FIRST_BIN = range(6)
 # nodes in each bin of neutrino energy, which are short
-PER_NEUTRINO_BIN = 5
+PER_NEUTRINO_BIN = 8
 # a single bin, for where the observed energy does not matter
 EVERYTHING = np.array([0.0, HIGHEST_ENERGY_MEV])
 

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from functools import cached_property
 from pathlib import Path
 
@@ -93,7 +93,8 @@ class Burst:
         if name not in cls.presets():
             kind = "burst"
             raise UnknownNameError(kind, name, cls.presets())
-        return cls.parse(data.text(f"bursts/{name}.toml"), origin=name)
+        made = cls.parse(data.text(f"bursts/{name}.toml"), origin=name)
+        return replace(made, notes=())  # nobody wrote this file who has to be told
 
     @classmethod
     def integrated(
