@@ -34,7 +34,8 @@ _METRIC = {
     "megatons": "megatonne",
 }
 _AMBIGUOUS = {"ton", "tons"}
-_SHORT_TONS = re.compile(r"\b(\w*?)(short_ton|ton)\b")
+# pint's names of US tons end like this; those of metric and long tons are told apart before it
+_SHORT_TONS = re.compile(r"\b\w*(?<!metric_)(?<!long_)ton\b")
 # the words for dimensions that the messages use
 _DIMENSIONS = {
     "[mass]": "a mass",
@@ -100,14 +101,14 @@ def to_fraction(value: object, argument: str) -> float:
         message = f"{argument}: {expected}; found {value!r}"
         raise UnitError(message)
     words = str(value).strip()
-    scale = 0.01 if words.endswith("%") else 1.0
+    whole = 100.0 if words.endswith("%") else 1.0
     try:
-        share = float(words.removesuffix("%")) * scale
+        share = float(words.removesuffix("%")) / whole
     except ValueError:
         message = f"{argument}: {expected}; found {value!r}"
         raise UnitError(message) from None
     if not 0 <= share <= 1:
-        hint = f'; did you mean "{words} %"?' if scale == 1.0 and 1 < share <= 100 else ""
+        hint = f'; did you mean "{words} %"?' if whole == 1.0 and 1 < share <= 100 else ""
         message = f"{argument}: {expected}; found {value!r}{hint}"
         raise UnitError(message)
     return share
@@ -159,7 +160,7 @@ def _read(text: str, unit: str, argument: str, example: str) -> Any:
 def _foreign(value: Any, unit: str, argument: str, example: str) -> Any:
     """Take a quantity of any registry, unless its unit is one of the tempting wrong ones."""
     units = str(value.units)
-    if _is_mass(unit) and _SHORT_TONS.search(units) and "tonne" not in units:
+    if _is_mass(unit) and _SHORT_TONS.search(units):
         message = f"{argument}: {value} counts US short tons of 907 kg; give tonnes or kilograms"
         message = f"{message}, {_quote(example)}"
         raise UnitError(message)
