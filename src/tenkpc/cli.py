@@ -4,7 +4,6 @@ from __future__ import annotations
 
 import os
 import sys
-import tempfile
 from collections.abc import Sequence
 from importlib import import_module
 from pathlib import Path
@@ -191,6 +190,8 @@ def _as_file(made: Forecast, path: Path) -> str:
 
 def _write(path: Path, text: str) -> None:
     """Write a file so that it is there whole or not at all."""
+    import tempfile
+
     try:
         handle, name = tempfile.mkstemp(dir=path.parent, prefix=f".{path.name}.")
         with os.fdopen(handle, "w", encoding="utf-8") as file:
