@@ -33,6 +33,10 @@ LABEL_SIZE = 9
 TAIL = 1e-4
 # depth of a light curve, as a share of its peak: the rarest interactions are to be seen
 DEPTH = 3e-4
+# bins with less than this share of the counts do not set the scale of the factors
+MATTERS = 1e-3
+# where curves are named, in turn, s
+LABEL_TIMES_S = (0.07, 1.0, 0.1, 0.3)
 # labels at the end of a line are at least so far apart, as a share of the panel's height
 LABELS_APART = 0.24
 # edges of the light curve, s: fine at the peak of the electron neutrinos, coarse in the tail
@@ -82,14 +86,14 @@ def spectrum(
     else:
         main.set_ylim(0, heights[-1].max() * 1.1)
     main.set_ylabel(f"events / {_width(widths, 'MeV')}")
-    _name_lines(main, ranked, heights, edges, last)
+    _name_areas(main, ranked, heights, edges, last)
     lowest = below or main
     if below is not None:
         totals = [
             (name, other.spectrum(bins=bins).iloc[:-1][ranked].sum(axis=1).to_numpy())
             for name, other in others(forecast)
         ]
-        _factors(below, totals, heights[-1], edges, last)
+        _factors(below, totals, heights[-1], edges)
     lowest.set_xlabel(f"observed {forecast.detector.response.kind} energy [MeV]")
     lowest.set_xlim(0, edges[last])
     _foot(below or main, forecast)
@@ -123,9 +127,10 @@ def light_curve(
     rates = [frame[key].to_numpy() / widths for key in ranked]
     total = np.sum(rates, axis=0)
     curves = [total, *rates] if len(ranked) > 1 else [total]
-    for rank, rate in enumerate(curves):
-        main.stairs(rate, edges, color=_colour(rank), linewidth=_weight(rank), baseline=None)
     names = ["all", *ranked] if len(ranked) > 1 else ranked
+    for rank, rate in enumerate(curves):
+        colour = "black" if names[rank] == "all" else _colour(ranked.index(names[rank]))
+        main.stairs(rate, edges, color=colour, linewidth=_weight(rank), baseline=None)
     main.set_yscale("log")
     main.set_ylim(total.max() * DEPTH, total.max() * 3)
     main.set_ylabel("events / s, in bins of their own width")
@@ -134,8 +139,8 @@ def light_curve(
         totals = []
         for name, other in others(forecast):
             counted = other.light_curve(quantities)[ranked].sum(axis=1).to_numpy()
-            totals.append((name, counted / widths))
-        _factors(below, totals, total, edges, len(edges) - 1)
+            totals.append((name, counted))
+        _factors(below, totals, total * widths, edges)
     for axes in filter(None, (main, below)):
         axes.set_xscale("symlog", linthresh=0.1, linscale=1.5)
         axes.set_xlim(edges[0], edges[-1])
@@ -193,17 +198,20 @@ def _equation(key: str) -> str:
     return "all" if key == "all" else interactions.by_key(key).equation
 
 
-def _name_lines(ax: Axes, ranked: Sequence[str], heights: Floats, edges: Floats, last: int) -> None:
-    """Write each area's reaction beside it, with a thin line to the place it names."""
+def _name_areas(ax: Axes, ranked: Sequence[str], heights: Floats, edges: Floats, last: int) -> None:
+    """Write the largest reaction into its area, the others beside theirs with a thin line."""
     middle = 0.5 * (edges[:-1] + edges[1:])
     parts = np.diff(heights, axis=0, prepend=np.zeros((1, heights.shape[1])))
-    for rank, (key, part) in enumerate(zip(ranked, parts, strict=True)):
-        peak = int(np.argmax(part[:last]))
-        point = (middle[peak], heights[rank, peak] - part[peak] / 2)
+    mean = float(parts[0] @ middle / parts[0].sum())
+    inside = {"fontsize": LABEL_SIZE, "ha": "center"}
+    ax.text(mean, 0.3 * parts[0].max(), _equation(ranked[0]), fontdict=inside)
+    top = int(np.argmax(heights[-1][:last]))
+    for rank, (key, part) in enumerate(zip(ranked[1:], parts[1:], strict=True), 1):
+        at = top + int(np.argmax(part[top:last]))
         ax.annotate(
             _equation(key),
-            point,
-            xytext=(0.62, 0.9 - 0.11 * rank),
+            (middle[at], heights[rank, at] - part[at] / 2),
+            xytext=(0.5, 1.02 - 0.09 * rank),
             textcoords="axes fraction",
             fontsize=LABEL_SIZE,
             va="center",
@@ -212,30 +220,30 @@ def _name_lines(ax: Axes, ranked: Sequence[str], heights: Floats, edges: Floats,
 
 
 def _name_curves(ax: Axes, names: Sequence[str], curves: Sequence[Floats], edges: Floats) -> None:
-    """Write each curve's reaction just above it, at a place of its own along the axis."""
-    places = np.interp(np.linspace(0.3, 0.75, len(names)), [0, 0.5, 1], [0.0, 0.1, edges[-1]])
-    for rank, (name, curve, place) in enumerate(zip(names, curves, places, strict=True)):
-        at = min(int(np.searchsorted(edges, place)), len(curve)) - 1
+    """Write each curve's reaction just above it, neighbours at different times."""
+    for rank, (name, curve) in enumerate(zip(names, curves, strict=True)):
+        place = LABEL_TIMES_S[rank % len(LABEL_TIMES_S)]
+        at = min(max(int(np.searchsorted(edges, place)) - 1, 0), len(curve) - 1)
         ax.annotate(
             _equation(name),
             (0.5 * (edges[at] + edges[at + 1]), curve[at]),
             xytext=(0, 5),
             textcoords="offset points",
             fontsize=LABEL_SIZE,
-            color="black",
-            weight="bold" if rank == 0 else "normal",
+            weight="bold" if name == "all" else "normal",
         )
 
 
-def _factors(
-    ax: Axes, totals: Sequence[tuple[str, Floats]], own: Floats, edges: Floats, last: int
-) -> None:
-    """Draw other conversions relative to this one, each line named at its right end."""
+def _factors(ax: Axes, totals: Sequence[tuple[str, Floats]], own: Floats, edges: Floats) -> None:
+    """Draw other conversions relative to this one, each line named at its right end.
+
+    The axis spans the bins that hold more than a sliver of the counts.
+    """
     curves = [
-        np.divide(other, own, out=np.full_like(own, np.nan), where=own > own.max() * TAIL)
+        np.divide(other, own, out=np.full_like(own, np.nan), where=own > own.sum() * TAIL**2)
         for _, other in totals
     ]
-    known = np.array([curve[:last][np.isfinite(curve[:last])] for curve in curves])
+    known = np.array([curve[own > own.sum() * MATTERS] for curve in curves])
     margin = 0.08 * (known.max() - known.min() + 0.1)
     low, high = known.min() - margin, known.max() + margin
     for rank, curve in enumerate(curves):
