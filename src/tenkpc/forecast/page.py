@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -33,6 +34,8 @@ Floats = NDArray[np.float64]
 SMALL_SHARE = 0.002
 # a share of counts from outside a window that is worth a warning
 MUCH_OUTSIDE = 0.05
+# below this count the chance of seeing none is worth a word
+FEW = 10
 # how many interactions have their sources named at the foot of the page
 SOURCES_FOR = 3
 
@@ -105,22 +108,30 @@ def _seen(forecast: Forecast) -> Block:
 
 
 def _uncertainty(forecast: Forecast) -> Block:
-    total, chance = forecast.total, forecast.chance
-    scale = total or 1.0
+    scale = forecast.total or 1.0
     fall, rise = forecast.cross_section_error
     decimals = decimals_for(max(fall, rise))
-    factors = [f"× {other.total / scale:.2f} {name}" for name, other in others(forecast)]
-    width = percent(0.5 * (chance.high - chance.low) / scale)
-    rows = (
-        ("chance", f"{number(chance.low)} to {number(chance.high)} in 68 % of bursts, ± {width}"),
+    rows = [
+        ("chance", _chance(forecast)),
         (
             "cross sections",
             f"− {number(fall, decimals)} + {number(rise, decimals)} in 68 % of cases,"
             f" − {percent(fall / scale)} + {percent(rise / scale)}",
         ),
-        ("other conversions", ", ".join(factors)),
-    )
-    return Facts(rows)
+    ]
+    if forecast.total > 0:
+        factors = [f"× {other.total / scale:.2f} {name}" for name, other in others(forecast)]
+        rows.append(("other conversions", ", ".join(factors)))
+    return Facts(tuple(rows))
+
+
+def _chance(forecast: Forecast) -> str:
+    """Say how far chance alone scatters the count; for a few events, how often none is seen."""
+    total, chance = forecast.total, forecast.chance
+    span = f"{number(chance.low)} to {number(chance.high)} in 68 % of bursts"
+    if total < FEW:
+        return f"{span}, none at all in {percent(math.exp(-total))}"
+    return f"{span}, ± {percent(0.5 * (chance.high - chance.low) / total)}"
 
 
 def _warnings(forecast: Forecast) -> list[str]:

@@ -55,7 +55,7 @@ class Burst:
     start_s: float
     end_s: float
     components: tuple[Peak | Core | Integrated, ...]
-    notes: tuple[str, ...] = ()
+    notes: tuple[str, ...] = field(compare=False, default=())
     text: str = field(compare=False, default="", repr=False)
     origin: str = field(compare=False, default="burst")
     changes: tuple[tuple[str, str], ...] = field(compare=False, default=())
