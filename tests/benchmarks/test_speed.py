@@ -5,6 +5,7 @@ Nothing is asserted about time: each line prints ours, the reference, their rati
 
 from __future__ import annotations
 
+import itertools
 import math
 import subprocess
 import sys
@@ -138,3 +139,26 @@ def test_conversion_is_cheap():
     window = (ORDINARY.start_s, ORDINARY.end_s)
     reference = seconds(lambda: flux.emission(ORDINARY, nodes, window))
     line("another conversion", seconds(lambda: base.converted(Unconverted()).total), reference, "2")
+
+
+def test_counts_of_one_more_time_dependent_burst():
+    """Emission at all times, conversion and fold, against nested quadrature without response.
+
+    The reference leaves the response out and takes one row, so the true ratio is smaller still.
+    """
+    base = Forecast(TANK, ORDINARY, distance="10 kpc")
+    assert base.total > 0
+    sigma = interactions.by_key("inverse-beta-decay").sigma
+
+    def at(time_s):
+        def integrand(energy):
+            rate = ORDINARY.rate(np.array([time_s]), np.array([energy]))[1, 0, 0]
+            return rate * float(sigma("anti_nu_e", np.array(energy)))
+
+        return quad(integrand, 1.9, 80.0, epsrel=1e-4)[0]
+
+    edges = ORDINARY.time_panels()
+    spans = list(itertools.pairwise(edges))
+    reference = seconds(lambda: [quad(at, a, b, epsrel=1e-4)[0] for a, b in spans], repeat=1)
+    ours = seconds(lambda: base.at("10 kpc").total)
+    line("counts of one more time-dependent burst", ours, reference, "at most 1/3000")
