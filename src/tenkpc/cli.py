@@ -12,7 +12,7 @@ from typing import TYPE_CHECKING, Any
 import click
 
 from tenkpc import __version__
-from tenkpc.errors import ComputationError, InputError
+from tenkpc.errors import ComputationError, InputError, suggestion
 
 if TYPE_CHECKING:
     from tenkpc.detector.detector import Detector
@@ -39,6 +39,16 @@ class Shell(click.Group):
         except ComputationError as error:
             click.echo(str(error), err=True)
             context.exit(1)
+
+    def resolve_command(
+        self, context: click.Context, args: list[str]
+    ) -> tuple[str | None, click.Command | None, list[str]]:
+        """Find a command, or name the nearest one."""
+        if args and args[0] not in self.commands and not args[0].startswith("-"):
+            hint = suggestion(args[0], self.commands)
+            message = f"no command is called {args[0]!r}{hint}"
+            raise click.UsageError(message, context)
+        return super().resolve_command(context, args)
 
 
 @click.group(cls=Shell, context_settings={"help_option_names": ["-h", "--help"]})
