@@ -12,7 +12,8 @@ from pydantic import Field
 
 from tenkpc import textfiles
 from tenkpc.errors import FileError, InputError
-from tenkpc.textfiles import Energy, Fraction, InUnit, Mass, Strict, parse
+from tenkpc.fields import Energy, Fraction, InUnit, Mass
+from tenkpc.textfiles import Strict, parse
 
 
 class Round(Strict):

@@ -12,29 +12,19 @@ import math
 import re
 import tomllib
 from collections.abc import Iterable, Iterator, Mapping, Sequence
-from dataclasses import dataclass
 from pathlib import Path
-from typing import Annotated, Any, TypeAlias, TypeVar, get_args
+from typing import Any, TypeVar, get_args
 
 from pydantic import (
     BaseModel,
     ConfigDict,
-    GetCoreSchemaHandler,
-    GetJsonSchemaHandler,
     ValidationError,
 )
-from pydantic_core import PydanticCustomError, core_schema
 
-from tenkpc import units
-from tenkpc.errors import FileError, InputError, Problem, suggestion
+from tenkpc.errors import FileError, Problem, suggestion
 from tenkpc.keypaths import KeyPath, as_text, changed, dotted, line_of
 
 __all__ = [
-    "Density",
-    "Energy",
-    "Fraction",
-    "InUnit",
-    "Mass",
     "Strict",
     "as_text",
     "changed",
@@ -63,78 +53,6 @@ class Strict(BaseModel):
     def cross_rules(cls, raw: Mapping[str, Any]) -> Iterable[tuple[KeyPath, str]]:
         """Say what is wrong between the keys of a table: paths inside it, and sentences."""
         return ()
-
-
-@dataclass(frozen=True)
-class InUnit:
-    """A field that is written with its unit in the file and is a float inside.
-
-    Attributes
-    ----------
-    unit
-        unit of the float.
-    example
-        a good value, for messages and for the schema.
-    minimum, above
-        least value, and value that must be exceeded, in ``unit``.
-    """
-
-    unit: str
-    example: str
-    minimum: float | None = None
-    above: float | None = None
-
-    def convert(self, value: object) -> float:
-        """Turn a text into a float in the unit, or say why not."""
-        try:
-            number = units.to_float(value, self.unit, "", self.example)
-        except InputError as error:
-            raise _sentence(str(error).removeprefix(": ")) from None
-        if self.minimum is not None and number < self.minimum:
-            message = f"expected at least {self.minimum:g} {self.unit}; found {value!r}"
-            raise _sentence(message)
-        if self.above is not None and number <= self.above:
-            message = f"expected more than {self.above:g} {self.unit}; found {value!r}"
-            raise _sentence(message)
-        return number
-
-    def __get_pydantic_core_schema__(
-        self, source: Any, handler: GetCoreSchemaHandler
-    ) -> core_schema.CoreSchema:
-        return core_schema.no_info_plain_validator_function(self.convert)
-
-    def __get_pydantic_json_schema__(
-        self, schema: core_schema.CoreSchema, handler: GetJsonSchemaHandler
-    ) -> dict[str, Any]:
-        return {"type": "string", "examples": [self.example]}
-
-
-@dataclass(frozen=True)
-class Share:
-    """A field between 0 and 1, written ``0.94`` or ``"94 %"``."""
-
-    def convert(self, value: object) -> float:
-        """Turn a number or per cent into a share, or say why not."""
-        try:
-            return units.to_fraction(value, "")
-        except InputError as error:
-            raise _sentence(str(error).removeprefix(": ")) from None
-
-    def __get_pydantic_core_schema__(
-        self, source: Any, handler: GetCoreSchemaHandler
-    ) -> core_schema.CoreSchema:
-        return core_schema.no_info_plain_validator_function(self.convert)
-
-    def __get_pydantic_json_schema__(
-        self, schema: core_schema.CoreSchema, handler: GetJsonSchemaHandler
-    ) -> dict[str, Any]:
-        return {"anyOf": [{"type": "number", "minimum": 0, "maximum": 1}, {"type": "string"}]}
-
-
-Mass: TypeAlias = Annotated[float, InUnit("kg", "12 kt", above=0.0)]
-Energy: TypeAlias = Annotated[float, InUnit("MeV", "5 MeV", minimum=0.0)]
-Density: TypeAlias = Annotated[float, InUnit("g/cm^3", "0.86 g/cm^3", above=0.0)]
-Fraction: TypeAlias = Annotated[float, Share()]
 
 
 def read_text(path: str | Path) -> str:
@@ -263,10 +181,6 @@ def _column(
             problems.append(Problem(number, name, f"expected a finite number, found {cell!r}"))
         values.append(value)
     return values
-
-
-def _sentence(words: str) -> PydanticCustomError:
-    return PydanticCustomError("sentence", "{words}", {"words": words})
 
 
 def _unreadable(place: Path, message: str) -> FileError:

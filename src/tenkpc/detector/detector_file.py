@@ -15,7 +15,8 @@ from pydantic import BeforeValidator, Field
 from tenkpc import interactions
 from tenkpc.detector import materials
 from tenkpc.errors import InputError, suggestion
-from tenkpc.textfiles import Density, Energy, Fraction, Mass, Strict
+from tenkpc.fields import Density, Energy, Fraction, Mass
+from tenkpc.textfiles import Strict
 
 Problems = Iterable[tuple[tuple[str | int, ...], str]]
 

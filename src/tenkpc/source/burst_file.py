@@ -11,7 +11,8 @@ from typing import Annotated, Any, Generic, Literal, TypeVar
 
 from pydantic import Field
 
-from tenkpc.textfiles import InUnit, Strict
+from tenkpc.fields import InUnit
+from tenkpc.textfiles import Strict
 
 Problems = Iterable[tuple[tuple[str | int, ...], str]]
 

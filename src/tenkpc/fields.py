@@ -1,0 +1,96 @@
+"""Types of the fields of users' files: written with a unit or per cent, floats inside."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import Annotated, Any, TypeAlias
+
+from pydantic import GetCoreSchemaHandler, GetJsonSchemaHandler
+from pydantic_core import PydanticCustomError, core_schema
+
+from tenkpc import units
+from tenkpc.errors import InputError
+
+
+class _Converted:
+    """A field whose value `convert` makes of what is written, or says what is wrong with it."""
+
+    def convert(self, value: object) -> float:
+        """Turn what is written into a float; raise an `InputError` where it cannot be."""
+        raise NotImplementedError
+
+    def _checked(self, value: object) -> float:
+        try:
+            return self.convert(value)
+        except InputError as error:
+            words = str(error).removeprefix(": ")
+            kind = "sentence"
+            raise PydanticCustomError(kind, "{words}", {"words": words}) from None
+
+    def __get_pydantic_core_schema__(
+        self, source: Any, handler: GetCoreSchemaHandler
+    ) -> core_schema.CoreSchema:
+        return core_schema.no_info_plain_validator_function(self._checked)
+
+    def __get_pydantic_json_schema__(
+        self, schema: core_schema.CoreSchema, handler: GetJsonSchemaHandler
+    ) -> dict[str, Any]:
+        return self.json_schema()
+
+    def json_schema(self) -> dict[str, Any]:
+        """Give the schema that lets an editor complete and check."""
+        raise NotImplementedError
+
+
+@dataclass(frozen=True)
+class InUnit(_Converted):
+    """A quantity in a unit.
+
+    Attributes
+    ----------
+    unit
+        unit of the float.
+    example
+        a good value, for messages and for the schema.
+    minimum, above
+        least value, and value that must be exceeded, in ``unit``.
+    """
+
+    unit: str
+    example: str
+    minimum: float | None = None
+    above: float | None = None
+
+    def convert(self, value: object) -> float:
+        """Turn a text such as ``"12 kt"`` into a float in the unit."""
+        number = units.to_float(value, self.unit, "", self.example)
+        if self.minimum is not None and number < self.minimum:
+            message = f"expected at least {self.minimum:g} {self.unit}; found {value!r}"
+            raise InputError(message)
+        if self.above is not None and number <= self.above:
+            message = f"expected more than {self.above:g} {self.unit}; found {value!r}"
+            raise InputError(message)
+        return number
+
+    def json_schema(self) -> dict[str, Any]:
+        """Give a text with an example."""
+        return {"type": "string", "examples": [self.example]}
+
+
+@dataclass(frozen=True)
+class Share(_Converted):
+    """A share between 0 and 1, written ``0.94`` or ``"94 %"``."""
+
+    def convert(self, value: object) -> float:
+        """Turn a number or per cent into a share."""
+        return units.to_fraction(value, "")
+
+    def json_schema(self) -> dict[str, Any]:
+        """Give a number between 0 and 1, or a text."""
+        return {"anyOf": [{"type": "number", "minimum": 0, "maximum": 1}, {"type": "string"}]}
+
+
+Mass: TypeAlias = Annotated[float, InUnit("kg", "12 kt", above=0.0)]
+Energy: TypeAlias = Annotated[float, InUnit("MeV", "5 MeV", minimum=0.0)]
+Density: TypeAlias = Annotated[float, InUnit("g/cm^3", "0.86 g/cm^3", above=0.0)]
+Fraction: TypeAlias = Annotated[float, Share()]
