@@ -211,6 +211,26 @@ def test_a_scan_over_distance_has_slope_minus_two(forecast):
     assert frame.loc[10.0, "total"] == pytest.approx(forecast.total)
 
 
+def test_without_threshold_every_reaction_is_counted():
+    """The real cross sections through cells and through their totals: 1e-6, the quadrature's."""
+    plain = TANK.replace({"response": {"medium": "cherenkov"}})
+    frame = Forecast(plain, ORDINARY, distance="10 kpc").breakdown
+    assert frame["counted"].to_numpy() == pytest.approx(frame["reactions"].to_numpy(), rel=1e-6)
+
+
+def test_the_page_only_offers_commands_that_the_shell_understands(forecast):
+    """What the shell cannot be told is named instead of a command that would mislead."""
+    assert "--only electron-scattering" in repr(
+        Forecast(TANK, SIMPLE, distance="1 kpc", interactions={"inverse-beta-decay": False})
+    )
+    for other in (
+        forecast.replace({"volume.tank.mass": "20 kt"}),
+        forecast.within(energy_above="9 MeV"),
+        Forecast(Detector.parse(TANK.text), ORDINARY, distance="1 kpc"),
+    ):
+        assert "the shell has no words for" in " ".join(repr(other).split())
+
+
 def test_another_forecast_leaves_the_first_alone(forecast):
     """`at`, `within` and `replace` give new forecasts, each as if it had been asked for."""
     before = forecast.total

@@ -32,8 +32,8 @@ CELL_WIDTHS_MEV = ((0.05, 30.0), (0.125, 60.0), (0.25, 100.0), (0.5, HIGHEST_ENE
 LINE_WIDTH_MEV = 1e-4
 # nodes inside a cell, where the integrand is smooth
 PER_CELL = 2
-# nodes inside an incomplete panel, where it may end in a logarithm or a square root
-PER_PIECE = 16
+# nodes inside an incomplete panel, where it may begin with a logarithm or a square root
+PER_PIECE = 24
 # pieces start anew this far above a threshold, for cross sections that open like a root
 ONSET_MEV = (0.01, 0.05, 0.2, 0.7)
 # a cross section as it is, 1σ low, 1σ high, and only outside its window
@@ -226,9 +226,10 @@ def _part_of_panel(
 ) -> Floats:
     """∫ ℓ dσ/dT dE from start to end, for every kinetic energy; (kinetic, 4, 12)."""
     start, end, kinetic = stretch
-    x, w = gauss(order)
-    energy = start + (end - start) * x
-    values = deposit.differential(energy, kinetic) * (end - start) * w
+    t, w = gauss(order)
+    # crowded towards the lowest energy, where radiative corrections have a logarithm
+    energy = start + (end - start) * t**2
+    values = deposit.differential(energy, kinetic) * (end - start) * 2 * t * w
     weighted = np.moveaxis(_variants(state, energy) * values, 0, 1)
     integrals: Floats = np.matmul(weighted, grid.basis(panel, energy))
     return integrals

@@ -6,8 +6,10 @@ import shlex
 from collections.abc import Iterator
 from typing import TYPE_CHECKING
 
+from tenkpc.detector import gallery
 from tenkpc.detector.response import Curve, Resolution
 from tenkpc.rendering import decimals_for, number, percent
+from tenkpc.source.burst import Burst
 
 if TYPE_CHECKING:
     from tenkpc.forecast.forecast import Forecast
@@ -135,15 +137,34 @@ def _of_detector(forecast: Forecast) -> Iterator[Assumption]:
 
 
 def command(forecast: Forecast) -> str:
-    """Give the shell command that prints the page again."""
+    """Give the shell command that prints the page again, or say what the shell cannot be told."""
+    in_python = list(_beyond_the_shell(forecast))
+    if in_python:
+        return f"in Python, since the shell has no words for {', '.join(in_python)}"
     words = ["tenkpc", "forecast", forecast.detector.origin]
     words += ["--burst", forecast.burst.origin]
     words += ["--distance", f"{forecast.distance_kpc:.12g} kpc", *forecast.conversion.options()]
+    if forecast.interactions:
+        words += [word for key in forecast.keys for word in ("--only", key)]
     if forecast.window_s is not None:
         words += ["--between", *(f"{t:.12g} s" for t in forecast.window_s)]
-    changed = [*forecast.detector.changes, *forecast.burst.changes, *forecast.interactions.items()]
-    note = f"  (with {', '.join(f'{k} = {v}' for k, v in changed)})" if changed else ""
-    return shlex.join(words) + note
+    return shlex.join(words)
+
+
+def _beyond_the_shell(forecast: Forecast) -> Iterator[str]:
+    """List what went into a forecast that no option of the shell can say."""
+    detector, burst = forecast.detector, forecast.burst
+    if detector.origin not in gallery.names() and not detector.origin.endswith(".toml"):
+        yield "a detector without a file"
+    if burst.origin not in Burst.presets() and not burst.origin.endswith(".toml"):
+        yield "a burst without a file"
+    if not forecast.conversion.options():
+        yield "this conversion"
+    if forecast.energy_above_mev is not None:
+        yield "a cut in energy"
+    choices = {key: value for key, value in forecast.interactions.items() if value is not False}
+    changes = [*detector.changes, *burst.changes, *choices.items()]
+    yield from (f"{key} = {value}" for key, value in changes)
 
 
 def _is_unity(efficiency: Curve) -> bool:
