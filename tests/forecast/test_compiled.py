@@ -86,7 +86,7 @@ def narrow_total(energy):
 
 def exposure(kind, response):
     """One target of one interaction with a single final state."""
-    made = Interaction("k", "a", "electron", 0.0, "x", (), {"nu_e": (state(kind),)})
+    made = Interaction("k", "a", "electron", 0.0, (), {"nu_e": (state(kind),)})
     return Exposure("tank", 1.0, made, response)
 
 

@@ -6,7 +6,7 @@ from pathlib import Path
 
 import pytest
 
-from tenkpc import Burst, Detector, Forecast
+from tenkpc import Burst, Detector, Forecast, interactions
 
 GOLDEN = Path(__file__).parents[1] / "golden"
 TANK = Detector.gallery("mere-tank")
@@ -33,7 +33,7 @@ def test_a_faint_burst_says_how_often_nothing_is_seen():
 
 def test_nothing_at_all_is_said_without_nonsense():
     """All interactions off: zero, with no factors on zero and no division by it."""
-    off = dict.fromkeys(("electron-scattering", "inverse-beta-decay"), False)
+    off = dict.fromkeys(interactions.KEYS, False)
     words = page(interactions=off)
     assert "counts 0 events" in words
     assert "other conversions" not in words
@@ -50,4 +50,9 @@ def test_distances_come_in_the_unit_that_suits(distance, words):
 
 def test_small_rows_are_collapsed():
     """A row below two parts in a thousand is named in one line at the end."""
-    assert "1 smaller: electron-scattering" in page(interactions={"electron-scattering": 0.01})
+    assert "smaller: electron-scattering" in page(interactions={"electron-scattering": 0.01})
+
+
+def test_what_the_medium_does_not_see_is_named():
+    """Recoil protons give no Cherenkov light: one line says so, and no total holds them."""
+    assert "not seen: proton-scattering" in page()

@@ -8,13 +8,11 @@ from scipy.integrate import quad
 
 from tenkpc import interactions
 from tenkpc.constants import ELECTRON_MASS_MEV
+from tenkpc.interactions import recoil
 from tenkpc.interactions.electron import (
     SCALE_CM2_PER_MEV,
     ElectronInputs,
-    cosine,
     electron_scattering,
-    highest_recoil_mev,
-    lowest_neutrino_mev,
 )
 from tenkpc.interactions.electron_radiative import corrections, kappa_other
 
@@ -49,7 +47,7 @@ def test_totals_are_those_of_the_slow_calculation(energy):
 def test_the_fixed_quadrature_is_good_enough(species, energy):
     """Totals agree with adaptive quadrature over the recoil, logarithms and all: 2e-7."""
     (state,) = ES.final_states(species)
-    highest = float(highest_recoil_mev(np.array(energy)))
+    highest = float(recoil.highest_recoil_mev(np.array(energy), ELECTRON_MASS_MEV))
     integrand = lambda t: float(state.deposit.differential(np.array(energy), np.array(t)))
     expected = quad(integrand, 0, highest, epsabs=0, epsrel=1e-10, limit=200)[0]
     assert state.sigma_cm2(np.array(energy)) == pytest.approx(expected, rel=2e-7)
@@ -74,7 +72,7 @@ def test_the_scale_is_the_known_one():
 @pytest.mark.parametrize("energy", [2.0, 15.0])
 def test_the_tree_total_is_the_closed_form(energy):
     """∫ of the tree formula above a recoil, by hand: rounding."""
-    highest, least = float(highest_recoil_mev(np.array(energy))), 0.4
+    highest, least = float(recoil.highest_recoil_mev(np.array(energy), ELECTRON_MASS_MEV)), 0.4
     (state,) = TREE.final_states("nu_e")
     low, high = least / energy, highest / energy
     a, b = 0.5 + 0.23122, 0.23122
@@ -93,7 +91,9 @@ def test_tree_cross_sections_above_a_recoil(species, expected):
     """15 MeV, recoils above 5 MeV, in 1e-45 cm²: digits given."""
     (state,) = TREE.final_states(species)
     integrand = lambda t: float(state.deposit.differential(np.array(15.0), np.array(t)))
-    found = quad(integrand, 5.0, float(highest_recoil_mev(np.array(15.0))))[0]
+    found = quad(
+        integrand, 5.0, float(recoil.highest_recoil_mev(np.array(15.0), ELECTRON_MASS_MEV))
+    )[0]
     assert found * 1e45 == pytest.approx(expected, rel=2e-5)
 
 
@@ -103,15 +103,19 @@ def test_tree_cross_sections_above_a_recoil(species, expected):
 )
 def test_angles_follow_from_two_body_kinematics(energy, kinetic, expected):
     """Cosine of the recoil to the digits given, 1 at the largest recoil."""
-    assert cosine(energy, kinetic) == pytest.approx(expected, abs=1e-6)
-    assert cosine(energy, highest_recoil_mev(energy)) == pytest.approx(1.0, rel=1e-12)
+    assert recoil.cosine(energy, kinetic, ELECTRON_MASS_MEV) == pytest.approx(expected, abs=1e-6)
+    highest = recoil.highest_recoil_mev(energy, ELECTRON_MASS_MEV)
+    assert recoil.cosine(energy, highest, ELECTRON_MASS_MEV) == pytest.approx(1.0, rel=1e-12)
 
 
 def test_recoil_bounds_are_each_others_inverse():
     """The lowest neutrino energy for the largest recoil is the energy itself."""
     energy = np.geomspace(0.1, 150, 20)
-    assert lowest_neutrino_mev(highest_recoil_mev(energy)) == pytest.approx(energy, rel=1e-12)
-    assert lowest_neutrino_mev(5.0) == pytest.approx(5.24363, abs=1e-5)
+    highest = recoil.highest_recoil_mev(energy, ELECTRON_MASS_MEV)
+    assert recoil.lowest_neutrino_mev(highest, ELECTRON_MASS_MEV) == pytest.approx(
+        energy, rel=1e-12
+    )
+    assert recoil.lowest_neutrino_mev(5.0, ELECTRON_MASS_MEV) == pytest.approx(5.24363, abs=1e-5)
 
 
 @pytest.mark.parametrize("energy", [1e4, 1e5])
@@ -121,7 +125,7 @@ def test_corrections_have_the_known_integrals(energy):
     Sarantakos, Sirlin and Marciano, Nucl. Phys. B 217 (1983) 84, from memory; what is left at
     these energies falls like a power of m/E: 0.003 at 10⁴ MeV, 4e-4 at 10⁵.
     """
-    highest = float(highest_recoil_mev(np.array(energy)))
+    highest = float(recoil.highest_recoil_mev(np.array(energy), ELECTRON_MASS_MEV))
 
     def integral(which, factor):
         value = lambda u: float(corrections(np.array(energy), np.array(highest * u))[which])

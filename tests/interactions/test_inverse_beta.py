@@ -129,19 +129,7 @@ def test_inputs_move_the_total_as_they_should(energy, ratios):
     assert found == pytest.approx(ratios, abs=5e-5)
 
 
-GAMMA0 = np.diag([1.0, 1, -1, -1]).astype(complex)
-PAULI = np.array([[[0, 1], [1, 0]], [[0, -1j], [1j, 0]], [[1, 0], [0, -1]]])
-GAMMA = [GAMMA0] + [np.block([[np.zeros((2, 2)), s], [-s, np.zeros((2, 2))]]) for s in PAULI]
-GAMMA5 = 1j * GAMMA[0] @ GAMMA[1] @ GAMMA[2] @ GAMMA[3]
-METRIC = np.diag([1.0, -1, -1, -1])
-
-
-def slash(momentum):
-    """Contract a four-momentum with the gamma matrices."""
-    return sum(METRIC[i, i] * momentum[i] * GAMMA[i] for i in range(4))
-
-
-def squared_by_traces(energy, positron):
+def squared_by_traces(dirac, energy, positron):
     """Spin sum of inverse beta decay by explicit traces, in the normalisation of dσ/dt."""
     mp, mn, me = PROTON_MASS_MEV, NEUTRON_MASS_MEV, ELECTRON_MASS_MEV
     mass = 0.5 * (mp + mn)
@@ -158,37 +146,41 @@ def squared_by_traces(energy, positron):
     f2 = xi / ((1 - tau) * dipole)
     g1 = -1.2754 / (1 - t / 1014.0**2) ** 2
     g2 = 2 * mass**2 * g1 / (CHARGED_PION_MASS_MEV**2 - t)
-    lower = [METRIC[i, i] * q[i] for i in range(4)]
+    lower = [dirac.metric[i, i] * q[i] for i in range(4)]
     current = []
     for i in range(4):
         sigma_q = sum(
-            0.5j * (GAMMA[i] @ GAMMA[j] - GAMMA[j] @ GAMMA[i]) * lower[j] for j in range(4)
+            0.5j * (dirac.gamma[i] @ dirac.gamma[j] - dirac.gamma[j] @ dirac.gamma[i]) * lower[j]
+            for j in range(4)
         )
-        vector = f1 * GAMMA[i] + 1j * f2 / (2 * mass) * sigma_q
-        axial = g1 * GAMMA[i] @ GAMMA5 + g2 / mass * q[i] * GAMMA5
+        vector = f1 * dirac.gamma[i] + 1j * f2 / (2 * mass) * sigma_q
+        axial = g1 * dirac.gamma[i] @ dirac.gamma5 + g2 / mass * q[i] * dirac.gamma5
         current.append(vector + axial)
-    bar = [GAMMA0 @ c.conj().T @ GAMMA0 for c in current]
+    bar = [dirac.gamma0 @ c.conj().T @ dirac.gamma0 for c in current]
     total = 0
     for a in range(4):
         for b in range(4):
-            sign = METRIC[a, a] * METRIC[b, b]
+            sign = dirac.metric[a, a] * dirac.metric[b, b]
             lepton = np.trace(
-                slash(k)
-                @ GAMMA[a]
-                @ (np.eye(4) - GAMMA5)
-                @ (slash(e) - me * np.eye(4))
-                @ (np.eye(4) + GAMMA5)
-                @ GAMMA[b]
+                dirac.slash(k)
+                @ dirac.gamma[a]
+                @ (np.eye(4) - dirac.gamma5)
+                @ (dirac.slash(e) - me * np.eye(4))
+                @ (np.eye(4) + dirac.gamma5)
+                @ dirac.gamma[b]
             )
             hadron = np.trace(
-                (slash(n) + mn * np.eye(4)) @ current[a] @ (slash(p) + mp * np.eye(4)) @ bar[b]
+                (dirac.slash(n) + mn * np.eye(4))
+                @ current[a]
+                @ (dirac.slash(p) + mp * np.eye(4))
+                @ bar[b]
             )
             total += sign * lepton * hadron
     return total.real
 
 
 @pytest.mark.parametrize("energy", [2.5, 10.0, 50.0, 200.0])
-def test_the_matrix_element_is_the_spin_sum(energy):
+def test_the_matrix_element_is_the_spin_sum(dirac, energy):
     """The shape in positron energy agrees with explicit Dirac traces: 1e-9 by rounding."""
     low, high = (float(b) for b in kernel.positron_bounds_mev(np.array(energy)))
     positrons = low + (high - low) * np.array([0.1, 0.5, 0.9])
@@ -196,7 +188,7 @@ def test_the_matrix_element_is_the_spin_sum(energy):
     found = kernel.per_positron_energy(np.array(energy), positrons, plain)
     mp = PROTON_MASS_MEV
     scale = FERMI_CONSTANT_PER_MEV2**2 * 0.97373**2 * HBAR_C_MEV_CM**2
-    expected = np.array([squared_by_traces(energy, p) for p in positrons])
+    expected = np.array([squared_by_traces(dirac, energy, p) for p in positrons])
     # dσ/dt = |M|²/(64 π (m_p E)²) for G_F/√2 currents, half the proton spin average, dE = dt/2m_p
     expected *= scale / 2 / (2 * 16 * np.pi * 4 * (mp * energy) ** 2) * 2 * mp
     assert found / expected == pytest.approx(np.full(3, found[0] / expected[0]), rel=1e-9)

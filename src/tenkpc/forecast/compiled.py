@@ -54,13 +54,13 @@ class Exposure:
 
 @dataclass(frozen=True)
 class Row:
-    """Which events a row of the tensor counts."""
+    """Which events a row of the tensor counts; ``seen_as`` is empty where none are seen."""
 
     volume: str
     interaction: str
     final_state: str
     species: str
-    seen: bool
+    seen_as: str
 
 
 @dataclass(frozen=True, eq=False)
@@ -126,7 +126,9 @@ def compile_rows(exposures: Sequence[Exposure], grid: EnergyGrid, edges_mev: Flo
     cells: dict[int, _Cells] = {}
     for exposure, species, state in _states(exposures):
         start = _offset(exposure.response, state)
-        rows.append(_row(exposure, species, state, seen=start is not None))
+        seen_as = "" if start is None else state.seen_as
+        reaction = exposure.interaction.key
+        rows.append(Row(exposure.volume, reaction, state.label, species, seen_as))
         key = id(exposure.response)
         if key not in cells:
             starts = _starts(exposures, exposure.response)
@@ -170,10 +172,6 @@ def _states(exposures: Sequence[Exposure]) -> list[tuple[Exposure, str, FinalSta
         for species in SPECIES
         for state in exposure.interaction.final_states(species)
     ]
-
-
-def _row(exposure: Exposure, species: str, state: FinalState, *, seen: bool) -> Row:
-    return Row(exposure.volume, exposure.interaction.key, state.label, species, seen)
 
 
 def _offset(response: Response, state: FinalState) -> float | None:

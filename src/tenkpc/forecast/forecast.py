@@ -135,8 +135,8 @@ class Forecast:
     @property
     def chain(self) -> tuple[float, float, float]:
         """Reactions, those above threshold, those counted: rows that the medium sees."""
-        seen = [i for i, row in enumerate(self._compiled.rows) if row.seen]
-        sums = self._columns[seen].sum(axis=0)
+        seen = [i for i, row in enumerate(self.rows) if row.seen_as]
+        sums = self.row_values[seen].sum(axis=0)
         reactions, above = sums[columns.REACTIONS], sums[columns.ABOVE_THRESHOLD]
         return float(reactions), float(above), float(sums[columns.FIRST_BIN :].sum())
 
@@ -171,8 +171,8 @@ class Forecast:
 
     @property
     def breakdown(self) -> DataFrame:
-        """Give the columns of `counts` by volume, interaction, final state and species."""
-        return frames.breakdown(self._compiled.rows, self._columns)
+        """Give the columns of `counts` by final state and species, and as what each is seen."""
+        return frames.breakdown(self.rows, self.row_values)
 
     def spectrum(
         self, *, of: str = "observed", bins: Quantity | Sequence[Quantity] | None = None
@@ -257,20 +257,26 @@ class Forecast:
     @cached_property
     def keys(self) -> tuple[str, ...]:
         """Interactions that take part, alphabetically."""
-        return tuple(sorted({row.interaction for row in self._compiled.rows}))
+        return tuple(sorted({row.interaction for row in self.rows}))
 
     @cached_property
     def values(self) -> Floats:
         """Events by interaction and column of the compiled tensor."""
-        return self._by_key(self._columns)
+        return self._by_key(self.row_values)
+
+    @property
+    def rows(self) -> tuple[columns.Row, ...]:
+        """What each row of the compiled tensor counts: a final state of a species in a volume."""
+        return self._compiled.rows
 
     @cached_property
-    def _columns(self) -> Floats:
+    def row_values(self) -> Floats:
+        """Events by row and column of the compiled tensor."""
         return fold(self._fluence, self._compiled.species, self._compiled.tensor)[:, 0]
 
     def _by_key(self, values: Floats) -> Floats:
         """Add up the rows of each interaction: (rows, ...) -> (interactions, ...)."""
-        owner = [self.keys.index(row.interaction) for row in self._compiled.rows]
+        owner = [self.keys.index(row.interaction) for row in self.rows]
         summed = np.zeros((len(self.keys), *values.shape[1:]))
         np.add.at(summed, owner, values)
         return summed

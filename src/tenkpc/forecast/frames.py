@@ -45,7 +45,8 @@ def breakdown(rows: Sequence[columns.Row], values: Floats) -> DataFrame:
 
     names = ("volume", "interaction", "final_state", "species")
     index = [tuple(getattr(row, name) for name in names) for row in rows]
-    return DataFrame(named(values), index=MultiIndex.from_tuples(index, names=names))
+    table = {"seen_as": [row.seen_as or "not seen" for row in rows], **named(values)}
+    return DataFrame(table, index=MultiIndex.from_tuples(index, names=names))
 
 
 def spectrum(keys: Keys, values: Floats, edges_mev: Floats, kind: str) -> DataFrame:

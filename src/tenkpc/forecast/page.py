@@ -3,7 +3,8 @@
 from __future__ import annotations
 
 import math
-from typing import TYPE_CHECKING
+from collections.abc import Sequence
+from typing import TYPE_CHECKING, NamedTuple
 
 import numpy as np
 from numpy.typing import NDArray
@@ -83,28 +84,65 @@ def _chain(forecast: Forecast) -> Block:
 
 def _seen(forecast: Forecast) -> Block:
     """Rows grouped by what the detector sees, the largest first, with small ones collapsed."""
-    counted, error = _counted(forecast), _relative_error(forecast)
-    decimals = decimals_for(forecast.total)
-    total = forecast.total or 1.0
-    groups: dict[str, list[int]] = {}
-    for place in np.argsort(-counted, kind="stable"):
-        groups.setdefault(interactions.by_key(forecast.keys[place]).seen_as, []).append(place)
+    decimals, total = decimals_for(forecast.total), forecast.total or 1.0
     rows, small = [], []
-    for seen_as, members in sorted(groups.items(), key=lambda g: -counted[g[1]].sum()):
-        sum_ = counted[members].sum()
-        if sum_ < SMALL_SHARE * total:
-            small += members
+    for seen_as, entries in _groups(forecast):
+        counted = sum(entry.counted for entry in entries)
+        if not seen_as or counted < SMALL_SHARE * total:
+            small += entries
             continue
-        rows.append(Row((seen_as, number(sum_, decimals), percent(sum_ / total))))
-        for place in members:
-            share = counted[place] / total
-            cells = (_equation(forecast, place), number(counted[place], decimals), percent(share))
-            rows.append(Row((*cells, f"± {percent(error[place])}"), level=1, bar=share))
-    if small:
-        sum_ = counted[small].sum()
-        name = f"{len(small)} smaller: {', '.join(forecast.keys[place] for place in small)}"
-        rows.append(Row((name, number(sum_, decimals), percent(sum_ / total))))
+        rows.append(Row((seen_as, number(counted, decimals), percent(counted / total))))
+        for entry in entries:
+            share = entry.counted / total
+            if share < SMALL_SHARE:
+                small.append(entry)
+                continue
+            cells = (interactions.by_key(entry.key).equation, number(entry.counted, decimals))
+            error = f"± {percent(entry.error)}"
+            rows.append(Row((*cells, percent(share), error), level=1, bar=share))
+    rows += _collapsed(small, decimals, total)
     return Table(tuple(rows), ("seen as", "counted", "share", "cross section"))
+
+
+class _Entry(NamedTuple):
+    """What one interaction gives to one way of being seen."""
+
+    key: str
+    counted: float
+    error: float  # half the distance between 1σ low and high, relative
+
+
+def _groups(forecast: Forecast) -> list[tuple[str, list[_Entry]]]:
+    """Entries by what is seen, the largest group and the largest entry first."""
+    sums: dict[tuple[str, str], Floats] = {}
+    wanted = [columns.COUNTED_LOW, columns.COUNTED_HIGH]
+    counted = forecast.row_values[:, columns.FIRST_BIN :].sum(axis=1)
+    for row, value, ends in zip(
+        forecast.rows, counted, forecast.row_values[:, wanted], strict=True
+    ):
+        place = row.seen_as, row.interaction
+        sums[place] = sums.get(place, np.zeros(3)) + np.array([value, *ends])
+    groups: dict[str, list[_Entry]] = {}
+    for (seen_as, key), (value, low, high) in sums.items():
+        error = 0.5 * (high - low) / max(value, 1e-300)
+        groups.setdefault(seen_as, []).append(_Entry(key, float(value), float(error)))
+    for entries in groups.values():
+        entries.sort(key=lambda entry: -entry.counted)
+    return sorted(groups.items(), key=lambda group: -sum(e.counted for e in group[1]))
+
+
+def _collapsed(small: Sequence[_Entry], decimals: int, total: float) -> list[Row]:
+    """One line for rows too small to print, one for what the medium does not see at all."""
+    few = sorted({entry.key for entry in small if entry.counted > 0})
+    unseen = sorted({entry.key for entry in small} - set(few))
+    counted = sum(entry.counted for entry in small)
+    rows = []
+    if few:
+        name = f"smaller: {', '.join(few)}"
+        rows.append(Row((name, number(counted, decimals), percent(counted / total))))
+    if unseen:
+        rows.append(Row((f"not seen: {', '.join(unseen)}",)))
+    return rows
 
 
 def _uncertainty(forecast: Forecast) -> Block:
@@ -166,17 +204,6 @@ def _foot(forecast: Forecast) -> list[str]:
 def _counted(forecast: Forecast) -> Floats:
     counted: Floats = forecast.values[:, columns.FIRST_BIN :].sum(axis=1)
     return counted
-
-
-def _relative_error(forecast: Forecast) -> Floats:
-    """Half the distance between 1σ low and high, relative to the count."""
-    low, high = (forecast.values[:, c] for c in (columns.COUNTED_LOW, columns.COUNTED_HIGH))
-    relative: Floats = 0.5 * (high - low) / np.maximum(_counted(forecast), 1e-300)
-    return relative
-
-
-def _equation(forecast: Forecast, place: int) -> str:
-    return interactions.by_key(forecast.keys[place]).equation
 
 
 def _references(forecast: Forecast, place: int) -> tuple[object, ...]:

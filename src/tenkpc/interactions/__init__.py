@@ -5,21 +5,26 @@ Everything below this module is a formula on floats; only here do the two meet.
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Callable, Mapping
 from functools import lru_cache
 from types import MappingProxyType
+from typing import Any
 
 from tenkpc import data
 from tenkpc.errors import UnknownNameError
+from tenkpc.interactions import carbon, oxygen
 from tenkpc.interactions.base import Interaction
 from tenkpc.interactions.electron import ElectronInputs, electron_scattering
 from tenkpc.interactions.inverse_beta import inverse_beta_decay
 from tenkpc.interactions.inverse_beta_kernel import InverseBetaInputs
+from tenkpc.interactions.proton import ProtonInputs, proton_scattering
 
-KEYS = ("electron-scattering", "inverse-beta-decay")
 # named options of an interaction, the default first
 OPTIONS: Mapping[str, tuple[str, ...]] = MappingProxyType(
-    {"electron-scattering": ("radiative", "tree")}
+    {
+        "electron-scattering": ("radiative", "tree"),
+        "proton-scattering": ("without-strangeness", "with-strangeness"),
+    }
 )
 
 
@@ -39,20 +44,92 @@ def by_key(key: str, option: str | None = None) -> Interaction:
     if option is not None and option not in options:
         kind = f"option of {key}"
         raise UnknownNameError(kind, option, options)
-    if key == "inverse-beta-decay":
-        return inverse_beta_decay(_inverse_beta_inputs())
-    return electron_scattering(_electron_inputs(option or options[0]))
+    return _BUILDERS[key](option or (options[0] if options else ""))
 
 
-def _inverse_beta_inputs() -> InverseBetaInputs:
-    tables = data.document("cross_sections/inverse_beta_decay.toml")
-    return InverseBetaInputs(**{k: v for k, v in tables.items() if k != "provenance"})
+def _tables(name: str) -> dict[str, Any]:
+    tables = data.document(f"cross_sections/{name}.toml")
+    return {key: value for key, value in tables.items() if key != "provenance"}
 
 
-def _electron_inputs(option: str) -> ElectronInputs:
-    tables = data.document("cross_sections/electron_scattering.toml")
-    return ElectronInputs(
-        sin2_theta_w=tables["sin2_theta_w"],
-        relative_error=tables["relative_error"][option],
+def _inverse_beta(_: str) -> Interaction:
+    couplings = _tables("weak_couplings")
+    del couplings["sin2_theta_w"]
+    return inverse_beta_decay(InverseBetaInputs(**couplings))
+
+
+def _electron(option: str) -> Interaction:
+    inputs = ElectronInputs(
+        sin2_theta_w=_tables("weak_couplings")["sin2_theta_w"]["at_z_mass"],
+        relative_error=_tables("electron_scattering")["relative_error"][option],
         radiative=option == "radiative",
     )
+    return electron_scattering(inputs)
+
+
+def _proton(option: str) -> Interaction:
+    couplings, tables = _tables("weak_couplings"), _tables("proton_scattering")
+    inputs = ProtonInputs(
+        sin2_theta_w=couplings["sin2_theta_w"]["at_zero"],
+        axial_coupling=couplings["axial_coupling"],
+        strange_coupling=tables["strange_coupling"][option],
+        axial_mass_mev=couplings["axial_mass_mev"],
+        vector_mass_squared_mev2=couplings["vector_mass_squared_mev2"],
+        relative_error=tables["relative_error"][option],
+    )
+    return proton_scattering(inputs)
+
+
+def _carbon(build: Callable[[carbon.CarbonInputs], Interaction]) -> Callable[[str], Interaction]:
+    def built(_: str) -> Interaction:
+        couplings, tables = _tables("weak_couplings"), _tables("carbon_12")
+        two_ft, log_ft = tables["twice_superallowed_ft_s"], tables.pop("log_ft")
+        errors = tables.pop("relative_error")
+        inputs = carbon.CarbonInputs(
+            **tables,
+            error_mev=tuple(errors["energy_mev"]),
+            charged_error=tuple(errors["charged"]),
+            neutral_error=tuple(errors["neutral"]),
+            excited_error=errors["excited"],
+            # 3 is the ratio of spins of a 1⁺ and a 0⁺ level
+            strength={name: 3 * two_ft / 10**value for name, value in log_ft.items()},
+            axial_coupling=couplings["axial_coupling"],
+            sin2_theta_w=couplings["sin2_theta_w"]["at_zero"],
+        )
+        return build(inputs)
+
+    return built
+
+
+def _oxygen(build: Callable[[oxygen.OxygenInputs], Interaction]) -> Callable[[str], Interaction]:
+    def built(_: str) -> Interaction:
+        tables = _tables("oxygen_16")
+        gammas, errors = tables["gammas"], tables["relative_error"]
+        inputs = oxygen.OxygenInputs(
+            groups=tables["groups"],
+            gamma_scale_cm2=gammas["scale_cm2"],
+            gamma_threshold_mev=gammas["threshold_mev"],
+            lines=tuple(oxygen.Line(**line) for line in gammas["lines"]),
+            error_mev=tuple(errors["energy_mev"]),
+            charged_error=tuple(errors["charged"]),
+            gamma_error=errors["gammas"],
+        )
+        return build(inputs)
+
+    return built
+
+
+_BUILDERS: Mapping[str, Callable[[str], Interaction]] = MappingProxyType(
+    {
+        "carbon-12-excited": _carbon(carbon.excited),
+        "carbon-12-to-boron-12": _carbon(carbon.to_boron),
+        "carbon-12-to-nitrogen-12": _carbon(carbon.to_nitrogen),
+        "electron-scattering": _electron,
+        "inverse-beta-decay": _inverse_beta,
+        "oxygen-16-excited": _oxygen(oxygen.excited),
+        "oxygen-16-to-fluorine-16": _oxygen(oxygen.to_fluorine),
+        "oxygen-16-to-nitrogen-16": _oxygen(oxygen.to_nitrogen),
+        "proton-scattering": _proton,
+    }
+)
+KEYS = tuple(_BUILDERS)

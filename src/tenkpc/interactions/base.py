@@ -18,7 +18,7 @@ Three forms of that dependence cover everything below 200 MeV:
 
 from __future__ import annotations
 
-from collections.abc import Callable, Mapping
+from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -30,6 +30,13 @@ Floats = NDArray[np.float64]
 OfEnergy = Callable[[Floats], Floats]
 
 HIGHEST_ENERGY_MEV = 200.0
+# words for what is left of a lead particle in a detector; a positron's gammas are not singled out
+SEEN_AS = {"electron": "electron", "positron": "positron", "gamma": "gamma rays"}
+
+
+def piecewise(energy_mev: Floats, knots_mev: Sequence[float], values: Sequence[float]) -> Floats:
+    """Piecewise-linear function of energy that holds its end values: for tables of errors."""
+    return np.asarray(np.interp(energy_mev, knots_mev, values))
 
 
 @dataclass(frozen=True)
@@ -89,7 +96,7 @@ class FinalState:
     neutrons
         free neutrons in this final state.
     delayed
-        name of the nucleus that decays later, if any.
+        name of the nucleus that decays within a minute or so, if any.
     mean_cosine
         mean cosine between the lead particle and the neutrino, against neutrino energy in MeV.
     breaks_mev
@@ -113,6 +120,16 @@ class FinalState:
     delayed: str | None = None
     mean_cosine: OfEnergy | None = None
     breaks_mev: tuple[float, ...] = ()
+
+    @property
+    def seen_as(self) -> str:
+        """What a detector that sees the lead particle sees of it, in words."""
+        first = SEEN_AS.get(self.lead, f"{self.lead} recoil")
+        if self.neutrons:
+            return f"{first}, then neutron capture"
+        if self.delayed:
+            return f"{first}, then a decay"
+        return f"single {first}" if first == "electron" else first
 
 
 @dataclass(frozen=True)
@@ -141,8 +158,6 @@ class Interaction:
         ``"electron"`` or a nuclide such as ``"H-1"``.
     threshold_mev
         lowest neutrino energy at which the reaction is open.
-    seen_as
-        what a detector sees of it, in words: ``"positron, then neutron capture"``.
     references
         sources of the cross section.
     branches
@@ -153,7 +168,6 @@ class Interaction:
     equation: str
     target: str
     threshold_mev: float
-    seen_as: str
     references: tuple[Reference, ...]
     branches: Mapping[str, tuple[FinalState, ...]]
 

@@ -18,6 +18,7 @@ from numpy.typing import ArrayLike, NDArray
 
 from tenkpc.constants import ALPHA, FERMI_CONSTANT_PER_MEV2, HBAR_C_MEV_CM
 from tenkpc.constants import ELECTRON_MASS_MEV as M
+from tenkpc.interactions import recoil
 from tenkpc.interactions.base import FinalState, Interaction, Reference, Spread
 from tenkpc.interactions.electron_radiative import RHO, corrections, kappa_electron, kappa_other
 
@@ -76,7 +77,6 @@ def electron_scattering(inputs: ElectronInputs) -> Interaction:
         equation="ν + e⁻ → ν + e⁻",
         target="electron",
         threshold_mev=0.0,
-        seen_as="single electron",
         references=(TREE_REFERENCE, *sources),
         branches={
             species: (_state(species, inputs),)
@@ -92,7 +92,7 @@ def _state(species: str, inputs: ElectronInputs) -> FinalState:
         lead="electron",
         deposit=Spread(
             differential=partial(per_recoil_energy, species=species, inputs=inputs),
-            lowest_mev=lowest_neutrino_mev,
+            lowest_mev=partial(recoil.lowest_neutrino_mev, mass_mev=M),
             highest_mev=partial(np.full_like, fill_value=np.inf),
         ),
         window_mev=(0.0, HIGHEST_MEV),
@@ -129,18 +129,6 @@ def per_recoil_energy(
     return result
 
 
-def lowest_neutrino_mev(kinetic_mev: Floats) -> Floats:
-    """E_min = [T + √(T(T + 2m))]/2, the lowest neutrino energy for a recoil."""
-    lowest: Floats = 0.5 * (kinetic_mev + np.sqrt(kinetic_mev * (kinetic_mev + 2 * M)))
-    return lowest
-
-
-def highest_recoil_mev(neutrino_mev: Floats) -> Floats:
-    """T_max = 2E²/(m + 2E), the largest recoil of a neutrino."""
-    highest: Floats = 2 * neutrino_mev**2 / (M + 2 * neutrino_mev)
-    return highest
-
-
 def total_cm2(neutrino_mev: ArrayLike, species: str, inputs: ElectronInputs) -> Floats:
     """Total cross section in cm² per electron against neutrino energy in MeV; zero at zero."""
     return _integral(neutrino_mev, species, inputs, lambda energy, kinetic: 1.0)
@@ -149,14 +137,8 @@ def total_cm2(neutrino_mev: ArrayLike, species: str, inputs: ElectronInputs) -> 
 def mean_cosine(neutrino_mev: ArrayLike, species: str, inputs: ElectronInputs) -> Floats:
     """Mean cosine between recoil and neutrino; zero at zero energy."""
     total = total_cm2(neutrino_mev, species, inputs)
-    along = _integral(neutrino_mev, species, inputs, cosine)
+    along = _integral(neutrino_mev, species, inputs, partial(recoil.cosine, mass_mev=M))
     return np.divide(along, total, out=np.zeros_like(total), where=total > 0)
-
-
-def cosine(neutrino_mev: Floats, kinetic_mev: Floats) -> Floats:
-    """Cosine between recoil and neutrino: (E + m)/E √(T/(T + 2m))."""
-    ratio: Floats = np.sqrt(kinetic_mev / (kinetic_mev + 2 * M))
-    return (neutrino_mev + M) / neutrino_mev * ratio
 
 
 def _integral(
@@ -169,7 +151,7 @@ def _integral(
     energy = np.asarray(neutrino_mev, dtype=float)
     positive = np.where(energy > 0, energy, 1.0)[..., None]
     share, width = _recoil_nodes()
-    highest = highest_recoil_mev(positive)
+    highest = recoil.highest_recoil_mev(positive, M)
     kinetic = highest * share
     values = per_recoil_energy(positive, kinetic, species, inputs) * weight(positive, kinetic)
     summed: Floats = (values * width * highest).sum(axis=-1)

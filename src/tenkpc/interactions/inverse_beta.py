@@ -66,7 +66,6 @@ def inverse_beta_decay(inputs: InverseBetaInputs) -> Interaction:
         equation="ν̄e + p → e⁺ + n",
         target="H-1",
         threshold_mev=THRESHOLD_MEV,
-        seen_as="positron, then neutron capture",
         references=REFERENCES,
         branches={"anti_nu_e": (state,)},
     )

@@ -81,12 +81,18 @@ def _interaction(key: str) -> Page:
     rows = [
         ("target", interaction.target),
         ("threshold", f"{interaction.threshold_mev:.4g} MeV"),
-        ("seen as", interaction.seen_as),
+        ("seen as", "; ".join(_ways(key))),
         ("options", ", ".join(interactions.OPTIONS.get(key, ())) or "none"),
         *_cross_sections(key),
     ]
     references = [Paragraph(f"{r}: {r.used_for}", small=True) for r in interaction.references]
     return [Paragraph(interaction.equation), Facts(tuple(rows)), *references]
+
+
+def _ways(key: str) -> tuple[str, ...]:
+    """Ways in which a detector may see an interaction, each once."""
+    branches = interactions.by_key(key).branches.values()
+    return tuple(dict.fromkeys(state.seen_as for states in branches for state in states))
 
 
 def _cross_sections(key: str) -> list[tuple[str, str]]:
