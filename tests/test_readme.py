@@ -36,7 +36,7 @@ def test_both_commands_are_there_and_the_machine_runs_the_second():
     """The set-up commands stand on lines of their own; the check runs the very test command."""
     commands = [line.strip() for line in README.splitlines() if "python3 -m venv" in line]
     assert len(commands) == 2
-    assert commands[0].endswith('tenkpc forecast mere-tank --distance "10 kpc"')
+    assert commands[0].endswith('tenkpc forecast brine-hall --distance "10 kpc"')
     script = ROOT / ".ci" / "run"
     if script.exists():
         assert commands[1] in script.read_text(encoding="utf-8")

@@ -167,11 +167,10 @@ def test_files_that_cannot_be_read(tmp_path):
             textfiles.read_text(tmp_path / name)
 
 
-def test_columns_are_read_by_name(tmp_path):
+def test_columns_are_read_by_name():
     """Comments and further columns do not matter; the order of the headings does not either."""
-    path = tmp_path / "e.csv"
-    path.write_text("# read off a plot\nefficiency, energy_mev, note\n0.2, 1, a\n0.9, 3, b # c\n")
-    _, columns = textfiles.read_columns(path, ("energy_mev", "efficiency"))
+    text = "# read off a plot\nefficiency, energy_mev, note\n0.2, 1, a\n0.9, 3, b # c\n"
+    columns = textfiles.read_columns(text, ("energy_mev", "efficiency"), "e.csv")
     assert columns == {"energy_mev": [1.0, 3.0], "efficiency": [0.2, 0.9]}
 
 
@@ -183,9 +182,7 @@ def test_columns_are_read_by_name(tmp_path):
         ("", "empty"),
     ],
 )
-def test_columns_that_are_wrong_are_refused(tmp_path, text, words):
+def test_columns_that_are_wrong_are_refused(text, words):
     """Every cell that is no number is named with its line."""
-    path = tmp_path / "e.csv"
-    path.write_text(text)
     with pytest.raises(FileError, match=words):
-        textfiles.read_columns(path, ("energy_mev", "efficiency"))
+        textfiles.read_columns(text, ("energy_mev", "efficiency"), "e.csv")

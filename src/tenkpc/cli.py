@@ -23,6 +23,7 @@ BURST = "ordinary-collapse"
 DISTANCE = "10 kpc"
 CONVERSIONS = ("adiabatic", "equilibrated", "unconverted")
 ORDERINGS = ("inverted", "normal")
+FILES = ("burst", "detector")
 LISTS = ("bursts", "detectors", "interactions", "materials")
 
 
@@ -81,7 +82,7 @@ def main() -> None:
 @click.option(
     "--out",
     metavar="FILE",
-    help="Write to FILE instead: .txt or .html the page, .json all, .csv the counts.",
+    help="Write to FILE instead: .txt, .html, .md or .tex the page, .json all, .csv the counts.",
 )
 def forecast(
     detector: str,
@@ -108,7 +109,7 @@ def forecast(
     if between:
         made = made.within(time=between)
     if out is not None:
-        _write(Path(out), _as_file(made, Path(out)))
+        _write(Path(out), _as_file(made, Path(out)), "--out")
     else:
         click.echo(made.to_json() if as_json else repr(made))
 
@@ -130,6 +131,21 @@ def check(file: str, as_json: bool) -> None:
 
         words = json.dumps({"file": file, "problems": 0, "description": words.splitlines()})
     click.echo(words)
+
+
+@main.command()
+@click.argument("kind", type=click.Choice(FILES))
+@click.argument("file")
+def new(kind: str, file: str) -> None:
+    """Write FILE to begin with: a valid detector or burst, every key explained."""
+    from tenkpc import templates
+
+    place = Path(file)
+    if place.exists():
+        message = f"{file}: there is such a file already, and it is left as it is"
+        raise InputError(message)
+    _write(place, templates.text(kind), "FILE")
+    click.echo(f"{file}: written; tenkpc check {file} says what it describes")
 
 
 @main.command("list")
@@ -186,6 +202,10 @@ def _as_file(made: Forecast, path: Path) -> str:
         case ".html":
             head = '<!doctype html><meta charset="utf-8"><title>tenkpc</title>'
             return head + rendering.html(page.results(made)) + "\n"
+        case ".md":
+            return made.to_markdown()
+        case ".tex":
+            return made.to_latex()
         case ".json":
             return made.to_json() + "\n"
         case ".csv":
@@ -193,12 +213,13 @@ def _as_file(made: Forecast, path: Path) -> str:
             return "\n".join([*lines, made.counts.to_csv()])
         case _:
             message = (
-                f"--out: expected a name that ends in .txt, .html, .json or .csv; found {path}"
+                "--out: expected a name that ends in .txt, .html, .md, .tex, .json or .csv; "
+                f"found {path}"
             )
             raise InputError(message)
 
 
-def _write(path: Path, text: str) -> None:
+def _write(path: Path, text: str, argument: str) -> None:
     """Write a file so that it is there whole or not at all."""
     import tempfile
 
@@ -209,7 +230,7 @@ def _write(path: Path, text: str) -> None:
         Path(name).chmod(0o644)
         Path(name).replace(path)
     except OSError as error:
-        message = f"--out: cannot write {path}: {error.strerror or error}"
+        message = f"{argument}: cannot write {path}: {error.strerror or error}"
         raise InputError(message) from None
 
 

@@ -2,7 +2,8 @@
 
     TenkpcError
     ├── InputError            what the user gave cannot be used; also a ValueError
-    │   ├── UnitError         a unit is missing, unknown, or of another dimension
+    │   ├── UnitError         a unit is missing, unknown, or not what it should be
+    │   │   └── DimensionError   of another dimension
     │   ├── UnknownNameError  a name that is not in the list it was looked up in; also a KeyError
     │   └── FileError         a file that cannot be read or does not say what it must
     └── ComputationError      the input was fine, the computation was not; also a RuntimeError
@@ -27,6 +28,10 @@ class InputError(TenkpcError, ValueError):
 
 class UnitError(InputError):
     """A unit is missing, unknown, or of another dimension than the quantity asked for."""
+
+
+class DimensionError(UnitError):
+    """A quantity has its unit, but of another dimension than the one asked for."""
 
 
 class UnknownNameError(InputError, KeyError):

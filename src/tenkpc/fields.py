@@ -9,17 +9,19 @@ from pydantic import GetCoreSchemaHandler, GetJsonSchemaHandler
 from pydantic_core import PydanticCustomError, core_schema
 
 from tenkpc import units
-from tenkpc.errors import InputError
+from tenkpc.errors import DimensionError, InputError
+
+BIRKS_PER_LENGTH, BIRKS_PER_AREA = BIRKS_UNITS = ("cm/MeV", "g/cm^2/MeV")
 
 
 class _Converted:
     """A field whose value `convert` makes of what is written, or says what is wrong with it."""
 
-    def convert(self, value: object) -> float:
-        """Turn what is written into a float; raise an `InputError` where it cannot be."""
+    def convert(self, value: object) -> Any:
+        """Turn what is written into floats; raise an `InputError` where it cannot be."""
         raise NotImplementedError
 
-    def _checked(self, value: object) -> float:
+    def _checked(self, value: object) -> Any:
         try:
             return self.convert(value)
         except InputError as error:
@@ -78,6 +80,35 @@ class InUnit(_Converted):
 
 
 @dataclass(frozen=True)
+class BirksConstant(_Converted):
+    """Birks' constant, which comes in two dimensions: a float and the unit it is in.
+
+    In cm/MeV it goes with the stopping power in MeV/cm, in g/(cm² MeV) with the mass stopping
+    power; the density of the medium turns one into the other.
+    """
+
+    example: str = "0.01 cm/MeV"
+
+    def convert(self, value: object) -> tuple[float, str]:
+        """Turn a text into a float and its unit, one of `BIRKS_UNITS`."""
+        for unit in BIRKS_UNITS:
+            try:
+                number = units.to_float(value, unit, "", self.example)
+            except DimensionError:
+                continue
+            if number < 0:
+                message = f"expected at least 0 {unit}; found {value!r}"
+                raise InputError(message)
+            return number, unit
+        message = f"expected a value in {' or '.join(BIRKS_UNITS)}; found {value!r}"
+        raise InputError(message)
+
+    def json_schema(self) -> dict[str, Any]:
+        """Give a text with an example."""
+        return {"type": "string", "examples": [self.example]}
+
+
+@dataclass(frozen=True)
 class Share(_Converted):
     """A share between 0 and 1, written ``0.94`` or ``"94 %"``."""
 
@@ -92,5 +123,7 @@ class Share(_Converted):
 
 Mass: TypeAlias = Annotated[float, InUnit("kg", "12 kt", above=0.0)]
 Energy: TypeAlias = Annotated[float, InUnit("MeV", "5 MeV", minimum=0.0)]
+Rate: TypeAlias = Annotated[float, InUnit("1/s", "40 /day", minimum=0.0)]
+Birks: TypeAlias = Annotated[tuple[float, str], BirksConstant()]
 Density: TypeAlias = Annotated[float, InUnit("g/cm^3", "0.86 g/cm^3", above=0.0)]
 Fraction: TypeAlias = Annotated[float, Share()]

@@ -29,6 +29,7 @@ __all__ = [
     "as_text",
     "changed",
     "document",
+    "dotted",
     "line_of",
     "parse",
     "read_columns",
@@ -134,20 +135,14 @@ def validate(tables: Mapping[str, Any], model: type[Model], origin: str, text: s
     return checked
 
 
-def read_columns(path: str | Path, names: Sequence[str]) -> tuple[str, dict[str, list[float]]]:
-    """Read named columns of a CSV file with a line of headings; ``#`` begins a comment.
-
-    Returns
-    -------
-    tuple
-        the text of the file, and the columns by name.
+def read_columns(text: str, names: Sequence[str], origin: str) -> dict[str, list[float]]:
+    """Read named columns of a CSV text with a line of headings; ``#`` begins a comment.
 
     Raises
     ------
     FileError
         with every line that does not hold a number in each of the columns.
     """
-    text, origin = read_text(path), str(path)
     lines = [
         (number, [cell.strip() for cell in line.split("#")[0].split(",")])
         for number, line in enumerate(text.splitlines(), 1)
@@ -164,7 +159,7 @@ def read_columns(path: str | Path, names: Sequence[str]) -> tuple[str, dict[str,
     columns = {name: _column(name, heads.index(name), lines[1:], problems) for name in names}
     if problems:
         raise FileError(origin, problems)
-    return text, columns
+    return columns
 
 
 def _column(

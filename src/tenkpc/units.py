@@ -16,7 +16,7 @@ import re
 from functools import lru_cache
 from typing import TYPE_CHECKING, Any, cast
 
-from tenkpc.errors import UnitError
+from tenkpc.errors import DimensionError, UnitError
 
 if TYPE_CHECKING:
     import pint
@@ -173,7 +173,7 @@ def _converted(value: Any, unit: str, argument: str, example: str, *, shown: str
     try:
         number = float(value.to(unit).magnitude)
     except pint.DimensionalityError:
-        raise UnitError(_wrong_dimension(value, unit, argument, example, shown)) from None
+        raise DimensionError(_wrong_dimension(value, unit, argument, example, shown)) from None
     except (TypeError, ValueError):
         message = f"{argument}: expected one number, {_quote(example)}; found {shown!r}"
         raise UnitError(message) from None

@@ -80,7 +80,7 @@ def test_an_efficiency_may_be_a_number_points_or_a_table(tmp_path):
     assert made.response.true_efficiency.values == (0.2, 0.95)
     assert made.response.true_efficiency.zero_outside
     assert made.response.efficiency.values == (1.0,)
-    assert dict(made.tables)["eff.csv"].startswith("energy_mev")
+    assert dict(made.document.tables)["eff.csv"].startswith("energy_mev")
 
 
 @pytest.mark.parametrize(
@@ -131,7 +131,9 @@ def test_eight_mistakes_are_reported_in_one_go():
         ({"interactions.electron-scattering": "radiativ"}, "did you mean 'radiative'"),
         ({"interactions.electron-scattering": -1.0}, "positive factor"),
         ({"interactions.inverse-beta-decay": "tree"}, "there are: none"),
-        ({"response.energy": "visible"}, "kinetic, total"),
+        ({"response.energy": "visible"}, "reports total or kinetic energy"),
+        ({"response.energy": "visble"}, "did you mean 'visible'"),
+        ({"response.birks": "0.01 cm/MeV"}, "nothing to quench"),
         ({"volume": []}, "at least one volume"),
     ],
 )

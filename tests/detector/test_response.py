@@ -11,6 +11,7 @@ from hypothesis import strategies as st
 from scipy.integrate import quad
 from scipy.special import ndtr
 
+from tenkpc.detector.quenching import Plain
 from tenkpc.detector.response import Curve, Resolution, Response
 
 EDGES = np.arange(0.0, 41.0, 1.0)
@@ -82,7 +83,7 @@ def test_what_is_observed_below_the_first_edge_goes_into_the_first_bin():
 
 def test_particles_add_what_the_medium_sees_of_them():
     """Offsets belong to particles, and an unseen particle has no visible energy at all."""
-    response = Response(offsets_mev=MappingProxyType({"electron": 0.0, "positron": 1.0}))
+    response = Response(light=MappingProxyType({"electron": Plain(), "positron": Plain(1.0)}))
     assert response.visible("positron", 3.0) == 4.0
     assert response.visible("neutron", 3.0) is None
     assert response.kinetic("positron", np.array([0.5, 4.0])).tolist() == [0.0, 3.0]

@@ -11,6 +11,7 @@ from scipy.integrate import quad
 from scipy.special import ndtr
 
 from tenkpc import interactions
+from tenkpc.detector.quenching import Plain
 from tenkpc.detector.response import Curve, Resolution, Response
 from tenkpc.forecast.compiled import (
     ABOVE_THRESHOLD,
@@ -29,7 +30,7 @@ from tenkpc.interactions.base import FinalState, Fixed, Interaction, Shifted, Sp
 
 MASS = 0.511
 EDGES = np.arange(0.0, 81.0, 1.0)
-SEEN = MappingProxyType({"electron": 0.0, "gamma": 0.0})
+SEEN = MappingProxyType({"electron": Plain(), "gamma": Plain()})
 
 
 def flux(energy):
@@ -153,13 +154,13 @@ def brute_force(kind, response, low, high):
     return total
 
 
-SHARP = Response(kind="kinetic", offsets_mev=SEEN, threshold_mev=5.3)
+SHARP = Response(kind="kinetic", light=SEEN, threshold_mev=5.3)
 BLURRED = Response(
-    kind="kinetic", offsets_mev=SEEN, threshold_mev=5.3, resolution=Resolution(constant=0.03)
+    kind="kinetic", light=SEEN, threshold_mev=5.3, resolution=Resolution(constant=0.03)
 )
 RAMPED = Response(
     kind="kinetic",
-    offsets_mev=SEEN,
+    light=SEEN,
     threshold_mev=5.3,
     resolution=Resolution(constant=0.03),
     efficiency=Curve((5.0, 8.0, 12.5), (0.2, 0.9, 0.97)),
@@ -196,7 +197,7 @@ def test_the_counted_total_agrees_with_nested_quadrature(kind, response):
 @pytest.mark.parametrize("resolution", [Resolution(), Resolution(0.2, 0.03, 0.1)])
 def test_nothing_is_lost_without_threshold(kind, resolution):
     """Without threshold and losses every reaction is counted: 1e-6 is the quadrature's."""
-    found = counts(kind, Response(offsets_mev=SEEN, resolution=resolution))
+    found = counts(kind, Response(light=SEEN, resolution=resolution))
     assert found[FIRST_BIN:].sum() == pytest.approx(found[REACTIONS], rel=1e-6)
     assert found[ABOVE_THRESHOLD] == pytest.approx(found[REACTIONS], rel=1e-6)
 
@@ -218,7 +219,7 @@ def test_a_line_falls_into_its_bin():
     """A line without resolution is in the one bin that holds it, and only if above threshold."""
     found = counts("line", SHARP)[FIRST_BIN:]
     assert np.flatnonzero(found).tolist() == [15]
-    high = Response(kind="kinetic", offsets_mev=SEEN, threshold_mev=16.0)
+    high = Response(kind="kinetic", light=SEEN, threshold_mev=16.0)
     assert counts("line", high)[FIRST_BIN:].sum() == 0
 
 
@@ -227,7 +228,7 @@ def test_cross_section_errors_are_factors_at_each_energy():
     made = state("broad")
     lowered = lambda e: float(np.exp(-made.relative_error(e)) * made.sigma_cm2(np.array(e)))
     expected = quad(lambda e: flux(e) * lowered(e), 0, 200, epsrel=1e-10, limit=200)[0]
-    found = counts("broad", Response(offsets_mev=SEEN))
+    found = counts("broad", Response(light=SEEN))
     assert found[COUNTED_LOW] == pytest.approx(expected, rel=1e-6)
     assert found[COUNTED_LOW] < found[FIRST_BIN:].sum() < found[COUNTED_HIGH]
 
@@ -237,13 +238,13 @@ def test_the_share_outside_a_window_is_exact():
     made = state("shifted")
     sigma = lambda e: float(made.sigma_cm2(np.array(e)))
     expected = quad(lambda e: flux(e) * sigma(e), 50, 200, epsrel=1e-11, limit=200)[0]
-    found = counts("shifted", Response(offsets_mev=SEEN))
+    found = counts("shifted", Response(light=SEEN))
     assert found[COUNTED_OUTSIDE] == pytest.approx(expected, rel=1e-6)
 
 
 def test_an_unseen_particle_reacts_but_is_not_counted():
     """A row whose lead particle the medium does not see keeps its reactions and counts none."""
-    found = counts("broad", Response(offsets_mev=MappingProxyType({"proton": 0.0})))
+    found = counts("broad", Response(light=MappingProxyType({"proton": Plain()})))
     assert found[REACTIONS] > 0
     assert not found[ABOVE_THRESHOLD:].any()
 
@@ -263,7 +264,7 @@ def test_counts_by_neutrino_energy_add_up(kind):
 def test_a_bin_of_neutrino_energy_agrees_with_quadrature():
     """Without losses a bin of neutrino energy is ∫ flux × σ over it: 1e-6."""
     grid = EnergyGrid()
-    exposures = [exposure("broad", Response(offsets_mev=SEEN))]
+    exposures = [exposure("broad", Response(light=SEEN))]
     bins = by_neutrino_energy(exposures, grid, np.arange(0.0, 101.0, 2.0))
     phi = np.zeros((4, 1, grid.count))
     phi[0, 0] = flux(grid.nodes_mev)
@@ -287,9 +288,9 @@ def test_every_bin_agrees_with_nested_quadrature(kind, response, place):
 @pytest.mark.parametrize(("low", "high"), [(8.0, 9.0), (17.0, 18.0), (33.0, 34.0)])
 def test_bins_of_the_real_cross_sections_agree_with_nested_quadrature(key, low, high):
     """The same for the interactions themselves, at 3 per cent: 1e-3."""
-    seen = MappingProxyType({"electron": 0.0, "positron": 0.0})
+    seen = MappingProxyType({"electron": Plain(), "positron": Plain()})
     response = Response(
-        kind="kinetic", offsets_mev=seen, threshold_mev=5.3, resolution=Resolution(constant=0.03)
+        kind="kinetic", light=seen, threshold_mev=5.3, resolution=Resolution(constant=0.03)
     )
     interaction = interactions.by_key(key)
     (made,) = interaction.final_states("anti_nu_e")

@@ -12,10 +12,12 @@ GOLDEN = Path(__file__).parents[1] / "golden"
 TANK = Detector.gallery("mere-tank")
 
 
-def test_the_page_is_the_golden_one():
+@pytest.mark.parametrize("name", ["brine-hall", "mere-tank"])
+def test_the_page_is_the_golden_one(name):
     """A change of any letter is meant, or it is a fault; numbers are whole counts."""
-    forecast = Forecast(TANK, Burst.preset("ordinary-collapse"), distance="10 kpc")
-    expected = (GOLDEN / "mere-tank.txt").read_text(encoding="utf-8")
+    detector, burst = Detector.gallery(name), Burst.preset("ordinary-collapse")
+    forecast = Forecast(detector, burst, distance="10 kpc")
+    expected = (GOLDEN / f"{name}.txt").read_text(encoding="utf-8")
     assert repr(forecast) + "\n" == expected
 
 

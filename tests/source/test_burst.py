@@ -38,7 +38,10 @@ def test_replace_by_name() -> None:
     assert changed.components[1].rise_time_s == pytest.approx(0.04)
     assert changed.components[0] == burst.components[0]
     assert changed.text == burst.text
-    assert [path for path, _ in changed.changes] == ["core.mean_energy.nu_e", "core.rise_time"]
+    assert [path for path, _ in changed.document.changes] == [
+        "component.core.mean_energy.nu_e",
+        "component.core.rise_time",
+    ]
     assert burst.components[1].mean_energy_mev[0] == 10.0
 
 

@@ -7,8 +7,11 @@ read when they are first asked for, from wherever the package is installed.
 from __future__ import annotations
 
 import tomllib
+from collections.abc import Iterator
 from functools import lru_cache
+from hashlib import sha256
 from importlib.resources import files
+from importlib.resources.abc import Traversable
 from typing import Any
 
 from tenkpc.errors import ComputationError
@@ -44,3 +47,21 @@ def names(folder: str) -> tuple[str, ...]:
     entries = files(__name__).joinpath(folder).iterdir()
     found = (entry.name for entry in entries if entry.name.endswith(".toml"))
     return tuple(sorted(name.removesuffix(".toml") for name in found))
+
+
+@lru_cache(maxsize=1)
+def fingerprint() -> str:
+    """Short hash over all data files: equal where every number that ships is equal."""
+    digest = sha256()
+    for name, content in sorted(_contents(files(__name__), "")):
+        digest.update(f"{name}\n{len(content)}\n".encode() + content)
+    return digest.hexdigest()[:12]
+
+
+def _contents(folder: Traversable, path: str) -> Iterator[tuple[str, bytes]]:
+    for entry in folder.iterdir():
+        inner = f"{path}/{entry.name}"
+        if entry.is_dir():
+            yield from _contents(entry, inner)
+        elif entry.name.endswith(".toml"):
+            yield inner, entry.read_bytes()

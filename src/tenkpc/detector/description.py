@@ -7,7 +7,8 @@ from typing import TYPE_CHECKING
 from tenkpc.rendering import Page, Paragraph, Row, Rule, Table
 
 if TYPE_CHECKING:
-    from tenkpc.detector.detector import Detector, Volume
+    from tenkpc.detector.assembly import Volume
+    from tenkpc.detector.detector import Detector
 
 
 def page(detector: Detector) -> Page:

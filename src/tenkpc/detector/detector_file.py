@@ -1,29 +1,24 @@
 """The detector file: which keys there are, in which units, and which rules tie them together.
 
-Shorthands (`threshold = "5 MeV"`, `efficiency = "94 %"`) are written out before the check, so
-that a key means the same however it was written. The model only checks; what the numbers mean
-is decided in `tenkpc.detector.detector`.
+The models only check; what the numbers mean is decided in `tenkpc.detector.assembly`.
 """
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterable, Mapping
+from collections.abc import Callable, Iterable, Iterator, Mapping
 from typing import Annotated, Any, Literal
 
-from pydantic import BeforeValidator, Field
+from pydantic import Field
 
 from tenkpc import interactions
 from tenkpc.detector import materials
+from tenkpc.detector.background import SHAPES
+from tenkpc.detector.response_file import ResponseKeys
 from tenkpc.errors import InputError, suggestion
-from tenkpc.fields import Density, Energy, Fraction, Mass
+from tenkpc.fields import BIRKS_PER_LENGTH, BirksConstant, Density, Energy, Fraction, Mass, Rate
 from tenkpc.textfiles import Strict
 
 Problems = Iterable[tuple[tuple[str | int, ...], str]]
-
-
-def _written_out(value: Any) -> Any:
-    """Turn a bare value into the table that it is short for."""
-    return value if isinstance(value, dict) else {"value": value}
 
 
 def _of_material(name: str) -> materials.Composition:
@@ -36,50 +31,6 @@ COMPOSITIONS: Mapping[str, Callable[[Any], materials.Composition]] = {
     "formula": materials.of_formula,
     "mass_fractions": materials.of_mass_fractions,
 }
-
-
-class ThresholdKeys(Strict):
-    """`threshold`: an energy, or an energy and the kind of energy it is given in."""
-
-    value: Energy
-    of: Literal["kinetic", "total"] | None = None
-
-
-class ResolutionKeys(Strict):
-    """`resolution`: σ/E = a/√(E/MeV) ⊕ b ⊕ c/E, added in quadrature or linearly."""
-
-    stochastic: Annotated[float, Field(ge=0, le=10)] = 0.0
-    constant: Annotated[float, Field(ge=0, le=10)] = 0.0
-    noise: Energy = 0.0
-    combine: Literal["quadrature", "linear"] = "quadrature"
-
-
-class EfficiencyKeys(Strict):
-    """`efficiency`: a share, or points of a curve, in the file or in a table beside it."""
-
-    value: Fraction | None = None
-    points: tuple[tuple[Energy, Fraction], ...] | None = None
-    file: str | None = None
-    of: Literal["observed", "true"] = "observed"
-    beyond: Literal["error", "hold", "zero"] = "error"
-
-    @classmethod
-    def cross_rules(cls, raw: Mapping[str, Any]) -> Problems:
-        """Check that the efficiency is given in exactly one way."""
-        given = [key for key in ("value", "points", "file") if key in raw]
-        if len(given) != 1:
-            yield (), f"give one of value, points and file; found {' and '.join(given) or 'none'}"
-
-
-class ResponseKeys(Strict):
-    """`[response]`: what the instrument makes of an event."""
-
-    medium: Literal["cherenkov"]
-    energy: Literal["kinetic", "total"] = "total"
-    threshold: Annotated[ThresholdKeys, BeforeValidator(_written_out)] | None = None
-    resolution: ResolutionKeys = ResolutionKeys()
-    efficiency: Annotated[EfficiencyKeys, BeforeValidator(_written_out)] | None = None
-    live_fraction: Fraction = 1.0
 
 
 class VolumeKeys(Strict):
@@ -108,6 +59,43 @@ class VolumeKeys(Strict):
                 continue  # not even of the right type, which is reported already
 
 
+class BackgroundKeys(Strict):
+    """`[[background]]`: events that are recorded without a burst, above the threshold."""
+
+    name: Annotated[str, Field(min_length=1)]
+    rate: Rate
+    per: Mass | None = None
+    shape: Literal["constant", "exponential", "gaussian", "power", "table"]
+    start: Annotated[Energy | None, Field(alias="from")] = None
+    end: Annotated[Energy | None, Field(alias="to")] = None
+    mean: Energy | None = None
+    width: Energy | None = None
+    index: Annotated[float, Field(ge=-20, le=20)] | None = None
+    file: str | None = None
+
+    @classmethod
+    def cross_rules(cls, raw: Mapping[str, Any]) -> Problems:
+        """Check that a shape has its own keys and no others."""
+        shape = raw.get("shape")
+        if not isinstance(shape, str) or shape not in SHAPES:
+            return
+        mine = SHAPES[shape][1]
+        for key in mine:
+            if key not in raw:
+                yield (key,), f"is missing; the shape {shape!r} needs {' and '.join(mine)}"
+        for key in {key for _, keys in SHAPES.values() for key in keys} - {*mine}:
+            if key in raw:
+                yield (key,), f"does not belong to the shape {shape!r}, which has {', '.join(mine)}"
+
+
+class UncertaintyKeys(Strict):
+    """`[uncertainty]`: 1σ of what is known of the detector, relative."""
+
+    mass: Fraction = 0.0
+    efficiency: Fraction = 0.0
+    energy_scale: Fraction = 0.0
+
+
 class DetectorKeys(Strict):
     """A whole detector file."""
 
@@ -115,26 +103,26 @@ class DetectorKeys(Strict):
     about: str = ""
     volume: tuple[VolumeKeys, ...]
     response: ResponseKeys
+    background: tuple[BackgroundKeys, ...] = ()
     interactions: dict[str, bool | float | str] = Field(default_factory=dict)
+    uncertainty: UncertaintyKeys = UncertaintyKeys()
 
     @classmethod
     def cross_rules(cls, raw: Mapping[str, Any]) -> Problems:
-        """Check that names of volumes differ and interactions exist, with options they have."""
-        seen: set[str] = set()
-        volumes = raw.get("volume")
-        if volumes == []:
+        """Check names, that interactions exist, and what the light of protons needs to know."""
+        if raw.get("volume") == []:
             yield ("volume",), "expected at least one volume"
-        for place, volume in enumerate(volumes if isinstance(volumes, list) else []):
-            name = volume.get("name") if isinstance(volume, dict) else None
-            if isinstance(name, str) and name in seen:
-                yield ("volume", place, "name"), f"two volumes are called {name!r}"
-            seen.add(name if isinstance(name, str) else "")
+        for key in ("volume", "background"):
+            yield from _twice(key, _tables(raw, key))
         switched = raw.get("interactions")
         for key, value in (switched if isinstance(switched, dict) else {}).items():
             try:
                 check_choice(key, value)
             except InputError as error:
                 yield ("interactions", key), str(error)
+        response = raw.get("response")
+        if isinstance(response, dict) and "birks" in response:
+            yield from _quenchable(_tables(raw, "volume"), response["birks"])
 
 
 def check_choice(key: str, value: object) -> None:
@@ -163,3 +151,46 @@ def check_choice(key: str, value: object) -> None:
     if not isinstance(value, int | float) or not 0 < value < float("inf"):
         message = f"expected true, false, an option or a positive factor, found {value!r}"
         raise InputError(message)
+
+
+def _tables(raw: Mapping[str, Any], key: str) -> list[Mapping[str, Any]]:
+    """Tables of an array, empty ones in place of what is none."""
+    given = raw.get(key)
+    found = given if isinstance(given, list) else []
+    return [table if isinstance(table, dict) else {} for table in found]
+
+
+def _twice(key: str, tables: list[Mapping[str, Any]]) -> Iterator[Any]:
+    seen: set[str] = set()
+    for place, table in enumerate(tables):
+        name = table.get("name")
+        if isinstance(name, str) and name in seen:
+            yield (key, place, "name"), f"two tables of {key} are called {name!r}"
+        seen.add(name if isinstance(name, str) else "")
+
+
+def _quenchable(volumes: list[Mapping[str, Any]], birks: object) -> Iterator[Any]:
+    """Say what Birks' constant alone cannot do: other elements, and a density that is missing."""
+    try:
+        per_length = BirksConstant().convert(birks)[1] == BIRKS_PER_LENGTH
+    except InputError:
+        return  # reported where it stands
+    for place, table in enumerate(volumes):
+        given = [key for key in COMPOSITIONS if key in table]
+        try:
+            made = COMPOSITIONS[given[0]](table[given[0]]) if len(given) == 1 else None
+        except (InputError, TypeError, AttributeError):
+            continue  # reported where it stands
+        others = sorted(set(materials.elements(made)) - {"H", "C"}) if made is not None else []
+        if others:
+            message = (
+                f"birks needs the stopping power of protons, which is known here for H and C "
+                f"alone; {table[given[0]]!r} holds {', '.join(others)}: give quenching = "
+                "{ file = … } in its place"
+            )
+            yield ("volume", place, given[0]), message
+        elif given[:1] != ["material"] and "density" not in table and per_length:
+            yield (
+                ("volume", place, "density"),
+                f"is missing; birks in {BIRKS_PER_LENGTH} needs it",
+            )

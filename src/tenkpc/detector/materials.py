@@ -52,6 +52,15 @@ class Material:
     source: str
 
 
+def elements(composition: Composition) -> dict[str, float]:
+    """Atoms of each element, by its symbol, in a kilogram."""
+    found: dict[str, float] = {}
+    for nuclide, count in composition.nuclei_per_kg.items():
+        symbol = nuclide.name.partition("-")[0]
+        found[symbol] = found.get(symbol, 0.0) + count
+    return found
+
+
 def of_formula(formula: str) -> Composition:
     """Composition of a chemical formula, element or isotope: N_A × number / molar mass."""
     parts = atoms(formula)

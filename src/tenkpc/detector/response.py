@@ -14,12 +14,14 @@ Nothing is sampled, so a threshold may be as sharp as it likes.
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from types import MappingProxyType
 
 import numpy as np
 from numpy.typing import NDArray
 from scipy.special import ndtr
+
+from tenkpc.detector.quenching import Light
 
 Floats = NDArray[np.float64]
 
@@ -98,9 +100,8 @@ class Response:
     ----------
     kind
         the observed kind of energy: ``"total"``, ``"kinetic"`` or ``"visible"``.
-    offsets_mev
-        for every particle that the medium sees, what is added to its kinetic energy (the
-        annihilation gammas of a positron in a scintillator).
+    light
+        for every particle that the medium sees, what its kinetic energy is worth.
     event_offset_mev
         what the observed kind adds once per event (the electron mass for ``"total"``).
     threshold_mev
@@ -110,25 +111,34 @@ class Response:
         resolution.
     live_fraction
         share of the time in which the detector records.
+    scale_error
+        1σ of the energy scale, relative.
     """
 
     kind: str = "total"
-    offsets_mev: Mapping[str, float] = field(default_factory=lambda: MappingProxyType({}))
+    light: Mapping[str, Light] = field(default_factory=lambda: MappingProxyType({}))
     event_offset_mev: float = 0.0
     resolution: Resolution = Resolution()
     threshold_mev: float = 0.0
     efficiency: Curve = Curve()
     true_efficiency: Curve = Curve()
     live_fraction: float = 1.0
+    scale_error: float = 0.0
 
     def visible(self, particle: str, kinetic_mev: float) -> float | None:
         """What a particle adds to the energy of an event, MeV; None where it is not seen."""
-        offset = self.offsets_mev.get(particle)
-        return None if offset is None else kinetic_mev + offset
+        light = self.light.get(particle)
+        return None if light is None else float(light.visible(np.array(kinetic_mev)))
 
     def kinetic(self, particle: str, visible_mev: Floats) -> Floats:
         """Kinetic energy in MeV of a seen particle that adds ``visible_mev``: the inverse."""
-        return np.maximum(visible_mev - self.offsets_mev[particle], 0.0)
+        return self.light[particle].kinetic(visible_mev)
+
+    def scaled(self, factor: float) -> Response:
+        """Report every energy ``factor`` times as high: cuts and curves move the other way."""
+        curve = self.efficiency
+        moved = replace(curve, knots_mev=tuple(knot / factor for knot in curve.knots_mev))
+        return replace(self, threshold_mev=self.threshold_mev / factor, efficiency=moved)
 
     @property
     def knots_mev(self) -> tuple[float, ...]:

@@ -39,6 +39,17 @@ def energy_above_mev(energy: Quantity) -> float:
     return value
 
 
+def background_time_s(time: Quantity | None) -> float | None:
+    """Give the time for which background is counted in s; None leaves it to the burst."""
+    if time is None:
+        return None
+    value = units.to_float(time, "s", "background_time", "20 s")
+    if value < 0:
+        message = f"background_time: expected zero or more, found {time}"
+        raise InputError(message)
+    return value
+
+
 def window_s(time: tuple[Quantity, Quantity], burst: Window) -> Window:
     """Give the part of a window of time that lies within the burst, s."""
     if not _is_sequence(time) or len(time) != 2:

@@ -15,6 +15,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
+from tenkpc.detector.quenching import Quenched
 from tenkpc.detector.response import Response
 from tenkpc.forecast.deposits import (
     CENTRAL,
@@ -35,7 +36,8 @@ from tenkpc.species import SPECIES
 Floats = NDArray[np.float64]
 
 # columns of the tensor; the bins of observed energy follow, then everything above the last edge
-REACTIONS, ABOVE_THRESHOLD, COUNTED_LOW, COUNTED_HIGH, COUNTED_OUTSIDE, FIRST_BIN = range(6)
+REACTIONS, ABOVE_THRESHOLD, COUNTED_LOW, COUNTED_HIGH, COUNTED_OUTSIDE = range(5)
+SCALE_LOW, SCALE_HIGH, FIRST_BIN = range(5, 8)
 # nodes in each bin of neutrino energy, which are short
 PER_NEUTRINO_BIN = 8
 # a single bin, for where the observed energy does not matter
@@ -95,19 +97,54 @@ class Compiled:
 
 
 @dataclass(frozen=True, eq=False)
+class _Shares:
+    """What a response makes of deposits: shares of each, all of shape (deposits, …)."""
+
+    bins: Floats
+    above: Floats
+    scale_low: Floats
+    scale_high: Floats
+
+    @classmethod
+    def of(cls, response: Response, low: Floats, high: Floats, edges_mev: Floats) -> _Shares:
+        bins = response.share(low, high, edges_mev)
+        ends = [bins.sum(axis=1)] * 2
+        if response.scale_error:
+            factors = (1 - response.scale_error, 1 + response.scale_error)
+            moved = (response.scaled(factor) for factor in factors)
+            ends = [other.share(low, high, EVERYTHING).sum(axis=1) for other in moved]
+        return cls(bins, response.above_threshold(low, high), *ends)
+
+
+@dataclass(frozen=True, eq=False)
 class _Cells:
     """Cells of visible energy and what a response makes of each."""
 
     edges: Floats
-    share: Floats
-    above: Floats
+    shares: _Shares
 
     @classmethod
-    def of(cls, response: Response, edges_mev: Floats, starts_mev: Iterable[float]) -> _Cells:
-        edges = cell_edges([*edges_mev, *response.knots_mev, *starts_mev])
-        low, high = edges[:-1], edges[1:]
-        share = response.share(low, high, edges_mev)
-        return cls(edges, share, response.above_threshold(low, high))
+    def of(
+        cls, response: Response, edges_mev: Floats, starts_mev: Iterable[float], *, recoils: bool
+    ) -> _Cells:
+        edges = cell_edges([*edges_mev, *response.knots_mev, *starts_mev], recoils=recoils)
+        return cls(edges, _Shares.of(response, edges[:-1], edges[1:], edges_mev))
+
+
+class _CellsOf:
+    """Cells for every response and kind of particle, each made when it is first needed."""
+
+    def __init__(self, exposures: Sequence[Exposure], edges_mev: Floats) -> None:
+        self.exposures, self.edges_mev = exposures, edges_mev
+        self.known: dict[tuple[int, bool], _Cells] = {}
+
+    def __call__(self, response: Response, state: FinalState) -> _Cells:
+        recoils = isinstance(response.light.get(state.lead), Quenched)
+        key = id(response), recoils
+        if key not in self.known:
+            starts = _starts(self.exposures, response)
+            self.known[key] = _Cells.of(response, self.edges_mev, starts, recoils=recoils)
+        return self.known[key]
 
 
 def compile_rows(exposures: Sequence[Exposure], grid: EnergyGrid, edges_mev: Floats) -> Compiled:
@@ -123,17 +160,14 @@ def compile_rows(exposures: Sequence[Exposure], grid: EnergyGrid, edges_mev: Flo
         edges of the bins of observed energy, MeV, ascending.
     """
     rows, blocks = [], []
-    cells: dict[int, _Cells] = {}
+    cells = _CellsOf(exposures, edges_mev)
     for exposure, species, state in _states(exposures):
         start = _offset(exposure.response, state)
         seen_as = "" if start is None else state.seen_as
         reaction = exposure.interaction.key
         rows.append(Row(exposure.volume, reaction, state.label, species, seen_as))
-        key = id(exposure.response)
-        if key not in cells:
-            starts = _starts(exposures, exposure.response)
-            cells[key] = _Cells.of(exposure.response, edges_mev, starts)
-        block = _block(state, exposure.response, grid, cells[key], edges_mev, start)
+        made = cells(exposure.response, state)
+        block = _block(state, exposure.response, grid, made, edges_mev, start)
         blocks.append(block * exposure.targets)
     species_index = np.array([SPECIES.index(row.species) for row in rows], dtype=np.intp)
     empty = np.zeros((0, grid.count, FIRST_BIN + len(edges_mev)))
@@ -149,13 +183,13 @@ def by_neutrino_energy(
     The rows are those of `compile_rows`, the last column holds what lies above the last edge.
     """
     blocks = []
+    cells = _CellsOf(exposures, EVERYTHING)
     for exposure, _, state in _states(exposures):
-        starts = _starts(exposures, exposure.response)
-        cells = _Cells.of(exposure.response, EVERYTHING, starts)
         start = _offset(exposure.response, state)
         block = np.zeros((grid.count, len(neutrino_edges_mev)))
         if start is not None:
-            kept, kinetic = _kept(state, exposure.response, cells, start)
+            made = cells(exposure.response, state)
+            kept, kinetic = _kept(state, exposure.response, made, start)
             for part in parts(state, grid, kinetic, neutrino_edges_mev, PER_NEUTRINO_BIN):
                 middle = 0.5 * (part.low_mev + part.high_mev)
                 column = max(int(np.searchsorted(neutrino_edges_mev, middle)) - 1, 0)
@@ -176,7 +210,7 @@ def _states(exposures: Sequence[Exposure]) -> list[tuple[Exposure, str, FinalSta
 
 def _offset(response: Response, state: FinalState) -> float | None:
     """Visible energy of an event whose lead particle adds none; None if it is not seen."""
-    if state.lead not in response.offsets_mev:
+    if state.lead not in response.light:
         return None
     extras = (response.visible(particle, energy) for particle, energy in state.extras)
     return response.event_offset_mev + sum(energy for energy in extras if energy is not None)
@@ -205,33 +239,33 @@ def _block(
     block[:, REACTIONS] = total_weights(state, grid)[CENTRAL]
     if start is None:
         return block
-    share, above, kinetic = _observed(state, response, cells, edges_mev, start)
+    shares, kinetic = _observed(state, response, cells, edges_mev, start)
     weights = deposit_weights(state, grid, kinetic)
-    counted = share.sum(axis=1)
-    block[:, ABOVE_THRESHOLD] = weights[CENTRAL] @ above
+    counted = shares.bins.sum(axis=1)
+    block[:, ABOVE_THRESHOLD] = weights[CENTRAL] @ shares.above
     block[:, COUNTED_LOW] = weights[LOW] @ counted
     block[:, COUNTED_HIGH] = weights[HIGH] @ counted
     block[:, COUNTED_OUTSIDE] = weights[OUTSIDE] @ counted
-    block[:, FIRST_BIN:] = weights[CENTRAL] @ share
+    block[:, SCALE_LOW] = weights[CENTRAL] @ shares.scale_low
+    block[:, SCALE_HIGH] = weights[CENTRAL] @ shares.scale_high
+    block[:, FIRST_BIN:] = weights[CENTRAL] @ shares.bins
     return block
 
 
 def _observed(
     state: FinalState, response: Response, cells: _Cells, edges_mev: Floats, start: float
-) -> tuple[Floats, Floats, Floats]:
-    """Share per bin and above threshold of each cell, and the cells' kinetic edges."""
+) -> tuple[_Shares, Floats]:
+    """Shares of each cell, and the cells' edges as kinetic energies."""
     if isinstance(state.deposit, Fixed):
         line = start + (response.visible(state.lead, state.deposit.kinetic_mev) or 0.0)
         low = np.array([line - 0.5 * LINE_WIDTH_MEV])
-        high = low + LINE_WIDTH_MEV
-        share = response.share(low, high, edges_mev)
-        return share, response.above_threshold(low, high), np.zeros(2)
-    return cells.share, cells.above, response.kinetic(state.lead, cells.edges - start)
+        return _Shares.of(response, low, low + LINE_WIDTH_MEV, edges_mev), np.zeros(2)
+    return cells.shares, response.kinetic(state.lead, cells.edges - start)
 
 
 def _kept(
     state: FinalState, response: Response, cells: _Cells, start: float
 ) -> tuple[Floats, Floats]:
     """Counted share of each cell, and the cells' kinetic edges."""
-    share, _, kinetic = _observed(state, response, cells, EVERYTHING, start)
-    return share.sum(axis=1), kinetic
+    shares, kinetic = _observed(state, response, cells, EVERYTHING, start)
+    return shares.bins.sum(axis=1), kinetic

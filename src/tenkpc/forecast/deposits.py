@@ -25,9 +25,11 @@ from tenkpc.interactions.base import HIGHEST_ENERGY_MEV, FinalState, Fixed, Shif
 
 Floats = NDArray[np.float64]
 
-# widest cells of deposited energy, MeV, each up to the energy beside it: twice as wide misses
+# widest cells of visible energy, MeV, each up to the energy beside it: twice as wide misses
 # 1e-3 in 1 MeV bins
 CELL_WIDTHS_MEV = ((0.05, 30.0), (0.125, 60.0), (0.25, 100.0), (0.5, HIGHEST_ENERGY_MEV + 2.0))
+# the same for quenched recoils, whose spectrum falls by half within 0.3 MeV of visible energy
+RECOIL_WIDTHS_MEV = ((0.0025, 1.0), (0.01, 4.0), (0.05, 20.0), (0.5, HIGHEST_ENERGY_MEV + 2.0))
 # a line is a deposit this wide: narrow against any resolution, wide against rounding
 LINE_WIDTH_MEV = 1e-4
 # nodes inside a cell, where the integrand is smooth
@@ -63,10 +65,10 @@ class Part:
     weights: Floats
 
 
-def cell_edges(breaks_mev: Iterable[float]) -> Floats:
+def cell_edges(breaks_mev: Iterable[float], *, recoils: bool = False) -> Floats:
     """Edges of the cells of visible energy in MeV, with every given break among them."""
     parts, start = [], 0.0
-    for width, end in CELL_WIDTHS_MEV:
+    for width, end in RECOIL_WIDTHS_MEV if recoils else CELL_WIDTHS_MEV:
         parts.append(np.linspace(start, end, round((end - start) / width) + 1))
         start = end
     inside = [edge for edge in breaks_mev if 0 < edge < start]

@@ -11,6 +11,7 @@ from numpy.typing import NDArray
 
 from tenkpc import interactions
 from tenkpc.detector.detector import Detector
+from tenkpc.detector.response import Response
 from tenkpc.forecast.compiled import Compiled, Exposure, by_neutrino_energy, compile_rows
 from tenkpc.forecast.grid import EnergyGrid
 
@@ -27,12 +28,12 @@ def exposures(
     detector: Detector, chosen: Choices, energy_above_mev: float | None
 ) -> tuple[Exposure, ...]:
     """List every interaction that the detector's volumes hold targets for."""
-    response = detector.response
-    if energy_above_mev is not None:
-        cut = max(response.threshold_mev, energy_above_mev)
-        response = replace(response, threshold_mev=cut)
     made = []
+    responses: dict[int, Response] = {}  # volumes that respond alike share their cells
     for volume in detector.volumes:
+        response = responses.setdefault(
+            id(volume.response), _cut(volume.response, energy_above_mev)
+        )
         for key in interactions.KEYS:
             value = dict(chosen).get(key, True)
             interaction = interactions.by_key(key, value if isinstance(value, str) else None)
@@ -41,6 +42,11 @@ def exposures(
             if value is not False and targets > 0:
                 made.append(Exposure(volume.name, targets, interaction, response))
     return tuple(made)
+
+
+def _cut(response: Response, energy_above_mev: float | None) -> Response:
+    lowest = max(response.threshold_mev, energy_above_mev or 0.0)
+    return replace(response, threshold_mev=lowest)
 
 
 @lru_cache(maxsize=32)

@@ -13,13 +13,25 @@ from tenkpc import rendering
 from tenkpc.detector.detector import Detector
 from tenkpc.detector.detector_file import check_choice
 from tenkpc.errors import InputError
-from tenkpc.forecast import arguments, exposures, flux, frames, page, record
+from tenkpc.forecast import (
+    arguments,
+    budget,
+    compare,
+    exposures,
+    flux,
+    frames,
+    page,
+    quote,
+    record,
+)
 from tenkpc.forecast import compiled as columns
 from tenkpc.forecast.arguments import Quantity
+from tenkpc.forecast.bursts import BurstRange
 from tenkpc.forecast.fold import fold
 from tenkpc.forecast.grid import EnergyGrid
-from tenkpc.forecast.uncertainty import Interval, in_quadrature, poisson_interval
+from tenkpc.forecast.uncertainty import Interval, poisson_interval, predictive_interval
 from tenkpc.propagation.conversion import Adiabatic, Conversion
+from tenkpc.rendering import markup
 from tenkpc.source.burst import Burst
 
 if TYPE_CHECKING:
@@ -29,6 +41,19 @@ Floats = NDArray[np.float64]
 
 # points of a scan over distance
 SCAN_POINTS = 61
+# background is counted for so long at the most, unless another time is given
+BACKGROUND_AT_MOST_S = 20.0
+# everything that a forecast is made of
+INPUTS = (
+    "detector",
+    "burst",
+    "distance_kpc",
+    "conversion",
+    "interactions",
+    "window_s",
+    "energy_above_mev",
+    "background_time_s",
+)
 
 
 class Forecast:
@@ -48,6 +73,9 @@ class Forecast:
         what happens to the flavours on the way; adiabatic with normal ordering unless given.
     interactions
         switches, factors and options on top of the detector file's own, by interaction key.
+    background_time
+        how long background is counted; without it as long as the burst or the window of time
+        lasts, 20 s at most.
 
     Raises
     ------
@@ -63,6 +91,7 @@ class Forecast:
         distance: Quantity,
         conversion: Conversion | None = None,
         interactions: Mapping[str, bool | float | str] | None = None,
+        background_time: Quantity | None = None,
     ) -> None:
         self.detector = detector
         self.burst = burst
@@ -71,6 +100,7 @@ class Forecast:
         self.interactions = dict(interactions or {})
         self.window_s: tuple[float, float] | None = None
         self.energy_above_mev: float | None = None
+        self.background_time_s = arguments.background_time_s(background_time)
         for key, value in self.interactions.items():
             check_choice(key, value)
 
@@ -81,6 +111,10 @@ class Forecast:
     def converted(self, conversion: Conversion) -> Forecast:
         """Forecast the same burst with another flavour conversion."""
         return self._with(conversion=conversion)
+
+    def of(self, burst: Burst) -> Forecast:
+        """Forecast another burst in the same detector."""
+        return self._with(burst=burst)
 
     def within(
         self,
@@ -100,7 +134,7 @@ class Forecast:
         changed: dict[str, Any] = {}
         if time is not None:
             self._needs_time("within(time=...)")
-            changed["window_s"] = arguments.window_s(time, self._span)
+            changed["window_s"] = arguments.window_s(time, self.span_s)
         if energy_above is not None:
             changed["energy_above_mev"] = arguments.energy_above_mev(energy_above)
         return self._with(**changed)
@@ -122,15 +156,14 @@ class Forecast:
     def _with(self, **changed: Any) -> Forecast:
         """Make a forecast that differs in some inputs and shares no results."""
         other = object.__new__(Forecast)
-        inputs = ("detector", "burst", "distance_kpc", "conversion", "interactions")
-        for name in (*inputs, "window_s", "energy_above_mev"):
+        for name in INPUTS:
             setattr(other, name, changed.get(name, getattr(self, name)))
         return other
 
     @property
     def total(self) -> float:
         """Expected number of counted events."""
-        return float(self.values[:, columns.FIRST_BIN :].sum())
+        return float(self.counted.sum())
 
     @property
     def chain(self) -> tuple[float, float, float]:
@@ -150,12 +183,69 @@ class Forecast:
         """How much the total falls and rises when cross sections are 1σ off.
 
         Correlated over energies and final states within an interaction, independent between
-        interactions.
+        interactions; log-normal, so that no error however large takes more than all.
         """
-        counted = self.values[:, columns.FIRST_BIN :].sum(axis=1)
-        fall = in_quadrature(counted - self.values[:, columns.COUNTED_LOW])
-        rise = in_quadrature(self.values[:, columns.COUNTED_HIGH] - counted)
-        return fall, rise
+        return budget.combined(budget.cross_sections(self))
+
+    @property
+    def predictive(self) -> Interval:
+        """Counts between which 68 % fall with chance and the cross sections' error together."""
+        error = 0.5 * sum(self.cross_section_error) / (self.total or 1.0)
+        return predictive_interval(self.total, error)
+
+    @property
+    def background(self) -> DataFrame:
+        """Background by its name: rate above the threshold, time it is counted, and events.
+
+        It is part of no total, and no conversion or distance changes it.
+        """
+        return frames.background(self.detector.backgrounds, self._background_hz(), self.live_s)
+
+    @property
+    def live_s(self) -> float:
+        """Time in s for which background is counted."""
+        if self.background_time_s is not None:
+            return self.background_time_s
+        return min(self.span_s[1] - self.span_s[0], BACKGROUND_AT_MOST_S)
+
+    @property
+    def background_events(self) -> float:
+        """Expected number of background events in that time."""
+        return float(self._background_hz().sum()) * self.live_s
+
+    @property
+    def budget(self) -> DataFrame:
+        """What 1σ of each cause does to the total.
+
+        Rows: chance, each interaction's cross section, mass, efficiency and energy scale of the
+        detector where its file gives an error, and mixing angles. Columns: ``kind``; ``fall``
+        and ``rise`` in counts and in per cent; ``correlated``, what moves together; ``origin``.
+        Other bursts and conversions are possibilities, not errors: see `Forecast.range`.
+        """
+        return budget.frame(self)
+
+    @classmethod
+    def range(
+        cls, detector: Detector, bursts: Sequence[Burst], *, distance: Quantity, **inputs: Any
+    ) -> BurstRange:
+        """Forecast several bursts; the result has ``minimum``, ``median`` and ``maximum``.
+
+        Takes the arguments of a forecast, with a sequence of bursts in place of one.
+        """
+        if not bursts:
+            message = "bursts: expected at least one burst"
+            raise InputError(message)
+        return BurstRange(
+            tuple(cls(detector, burst, distance=distance, **inputs) for burst in bursts)
+        )
+
+    def compare(self, other: Forecast) -> DataFrame:
+        """Explain the difference to another forecast as a table of factors.
+
+        One change after another is made to this forecast until it has become the other; the
+        product of the column ``factor`` is the ratio of the totals, ``attrs["ratio"]``.
+        """
+        return compare.frame(self, other)
 
     @property
     def counts(self) -> DataFrame:
@@ -167,7 +257,7 @@ class Forecast:
         the counted events that comes from neutrino energies beyond what the cross section is
         meant for.
         """
-        return frames.counts(self.keys, self.values)
+        return frames.counts(self.keys, self.by_interaction)
 
     @property
     def breakdown(self) -> DataFrame:
@@ -192,6 +282,7 @@ class Forecast:
         DataFrame
             index ``energy_mev``, the left edge, with ``width_mev`` beside it; the last row
             holds everything above the last edge. ``attrs["energy"]`` names the kind of energy.
+            A detector with backgrounds has one column more, ``background``, for ``live_s``.
         """
         edges = arguments.energy_edges_mev(bins)
         if of == "observed":
@@ -203,7 +294,8 @@ class Forecast:
             raise InputError(message)
         values = self._by_key(fold(self._fluence, self._compiled.species, tensor)[:, 0])
         kind = self.detector.response.kind if of == "observed" else of
-        return frames.spectrum(self.keys, values, np.array(edges), kind)
+        noise = self._background_spectrum(np.array(edges)) if of == "observed" else None
+        return frames.spectrum(self.keys, values, np.array(edges), kind, noise)
 
     def light_curve(self, bins: Quantity | Sequence[Quantity]) -> DataFrame:
         """Counted events by bin of time after bounce, one column per interaction.
@@ -216,17 +308,19 @@ class Forecast:
         Returns
         -------
         DataFrame
-            index ``time_s``, the left edge (0 is one), with ``width_s`` beside it.
+            index ``time_s``, the left edge (0 is one), with ``width_s`` beside it. A detector
+            with backgrounds has one column more, ``background``.
         """
         self._needs_time("light_curve")
-        edges = arguments.time_edges_s(bins, self._span)
+        edges = arguments.time_edges_s(bins, self.span_s)
         values = np.zeros((len(edges) - 1, len(self.keys)))
-        for times, weights, places in flux.binned_time_nodes(self.burst, edges, self._span):
+        for times, weights, places in flux.binned_time_nodes(self.burst, edges, self.span_s):
             emitted = self.burst.rate(times, self._grid.nodes_mev) * weights[:, None]
             arriving = self._at_detector(emitted, times)
             counted = fold(arriving, self._compiled.species, self._compiled.counted)[:, :, 0]
             np.add.at(values, places, self._by_key(counted).T)
-        return frames.light_curve(self.keys, values.T, edges)
+        noise = self._background_hz().sum() if self.detector.backgrounds else None
+        return frames.light_curve(self.keys, values.T, edges, noise)
 
     def versus_distance(self, nearest: Quantity, farthest: Quantity) -> DataFrame:
         """Counted events by interaction at distances between two, evenly spaced in ratio."""
@@ -236,13 +330,38 @@ class Forecast:
             message = f"farthest: expected more than {nearest}, found {farthest}"
             raise InputError(message)
         distances = np.geomspace(first, last, SCAN_POINTS)
-        counted = self.values[:, columns.FIRST_BIN :].sum(axis=1)
-        values = counted[:, None] * (self.distance_kpc / distances) ** 2
+        values = self.counted[:, None] * (self.distance_kpc / distances) ** 2
         return frames.versus_distance(self.keys, values, distances)
 
     def explain(self) -> str:
         """Say what went into the number: every assumption, where it is from, and the sources."""
         return rendering.text(page.assumptions(self))
+
+    def sentence(self) -> str:
+        """Say the result in one sentence to be quoted, rounded as its errors allow."""
+        return quote.sentence(self)
+
+    def to_markdown(self) -> str:
+        """Give the page of results as Markdown."""
+        return markup.markdown(page.results(self))
+
+    def to_latex(self) -> str:
+        """Give the page of results as LaTeX, its tables as ``tabular``."""
+        return markup.latex(page.results(self))
+
+    @classmethod
+    def from_json(cls, text: str) -> Forecast:
+        """Make a forecast again from what `to_json` wrote.
+
+        On one version the total comes out to 1e-10. Where version or data differ, or the total
+        does, a `UserWarning` says what differs and by how much.
+
+        Raises
+        ------
+        InputError
+            where the text is no such record.
+        """
+        return record.from_json(text, cls)
 
     def to_json(self) -> str:
         """Write the numbers and all that is needed to compute them again as JSON."""
@@ -259,8 +378,14 @@ class Forecast:
         """Interactions that take part, alphabetically."""
         return tuple(sorted({row.interaction for row in self.rows}))
 
+    @property
+    def counted(self) -> Floats:
+        """Counted events by interaction, in the order of `keys`."""
+        counted: Floats = self.by_interaction[:, columns.FIRST_BIN :].sum(axis=1)
+        return counted
+
     @cached_property
-    def values(self) -> Floats:
+    def by_interaction(self) -> Floats:
         """Events by interaction and column of the compiled tensor."""
         return self._by_key(self.row_values)
 
@@ -300,7 +425,7 @@ class Forecast:
     @cached_property
     def _fluence(self) -> Floats:
         """Fluence of one kind of each species at the nodes, (species, 1, nodes), cm⁻² MeV⁻¹."""
-        emitted = flux.emission(self.burst, self._grid.nodes_mev, self._span)
+        emitted = flux.emission(self.burst, self._grid.nodes_mev, self.span_s)
         fluence: Floats = self._at_detector(*emitted).sum(axis=1, keepdims=True)
         return fluence
 
@@ -308,8 +433,23 @@ class Forecast:
         nodes = self._grid.nodes_mev
         return flux.at_detector(spectra, self.conversion, self.distance_kpc, nodes, times)
 
+    def _background_hz(self) -> Floats:
+        """Rate of each background above the lowest energy that is counted, (backgrounds,)."""
+        threshold, lowest = self.detector.response.threshold_mev, self.energy_above_mev or 0.0
+        sources = self.detector.backgrounds
+        return np.array([source.above_hz(lowest, threshold) for source in sources])
+
+    def _background_spectrum(self, edges_mev: Floats) -> Floats | None:
+        """Background events by bin of observed energy, then above the last edge."""
+        threshold, lowest = self.detector.response.threshold_mev, self.energy_above_mev or 0.0
+        rates = [
+            source.spectrum_hz(edges_mev, lowest, threshold) for source in self.detector.backgrounds
+        ]
+        return np.sum(rates, axis=0) * self.live_s if rates else None
+
     @property
-    def _span(self) -> tuple[float, float]:
+    def span_s(self) -> tuple[float, float]:
+        """First and last time after bounce that is counted, s."""
         return self.window_s or (self.burst.start_s, self.burst.end_s)
 
     def _needs_time(self, what: str) -> None:

@@ -13,6 +13,8 @@ from tenkpc.forecast import compiled as columns
 if TYPE_CHECKING:
     from pandas import DataFrame
 
+    from tenkpc.detector.background import Background
+
 Floats = NDArray[np.float64]
 Keys = Sequence[str]
 
@@ -49,17 +51,32 @@ def breakdown(rows: Sequence[columns.Row], values: Floats) -> DataFrame:
     return DataFrame(table, index=MultiIndex.from_tuples(index, names=names))
 
 
-def spectrum(keys: Keys, values: Floats, edges_mev: Floats, kind: str) -> DataFrame:
+def spectrum(
+    keys: Keys, values: Floats, edges_mev: Floats, kind: str, background: Floats | None
+) -> DataFrame:
     """Events by bin of energy, from (interactions, bins + 1), the last bin open."""
     widths = np.append(np.diff(edges_mev), np.inf)
-    frame = _binned(keys, values, edges_mev, widths, ("energy_mev", "width_mev"))
+    frame = _binned(keys, values, edges_mev, widths, ("energy_mev", "width_mev"), background)
     frame.attrs["energy"] = kind
     return frame
 
 
-def light_curve(keys: Keys, values: Floats, edges_s: Floats) -> DataFrame:
+def light_curve(
+    keys: Keys, values: Floats, edges_s: Floats, background_hz: float | None
+) -> DataFrame:
     """Events by bin of time, from (interactions, bins)."""
-    return _binned(keys, values, edges_s[:-1], np.diff(edges_s), ("time_s", "width_s"))
+    widths = np.diff(edges_s)
+    background = None if background_hz is None else background_hz * widths
+    return _binned(keys, values, edges_s[:-1], widths, ("time_s", "width_s"), background)
+
+
+def background(sources: Sequence[Background], rates_hz: Floats, live_s: float) -> DataFrame:
+    """Rates and events of each background."""
+    from pandas import DataFrame, Index
+
+    index = Index([source.name for source in sources], name="background")
+    table = {"rate_hz": rates_hz, "live_s": live_s, "counted": rates_hz * live_s}
+    return DataFrame(table, index=index)
 
 
 def versus_distance(keys: Keys, values: Floats, distances_kpc: Floats) -> DataFrame:
@@ -72,9 +89,16 @@ def versus_distance(keys: Keys, values: Floats, distances_kpc: Floats) -> DataFr
 
 
 def _binned(
-    keys: Keys, values: Floats, left: Floats, widths: Floats, names: tuple[str, str]
+    keys: Keys,
+    values: Floats,
+    left: Floats,
+    widths: Floats,
+    names: tuple[str, str],
+    background: Floats | None,
 ) -> DataFrame:
     from pandas import DataFrame, Index
 
     table = {names[1]: widths, **dict(zip(keys, values, strict=True))}
+    if background is not None:
+        table["background"] = background
     return DataFrame(table, index=Index(left, name=names[0]))

@@ -3,16 +3,16 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Sequence
+from collections.abc import Collection, Sequence
 from typing import TYPE_CHECKING, NamedTuple
 
 import numpy as np
 from numpy.typing import NDArray
 
 from tenkpc import interactions
+from tenkpc.forecast import budget, words
 from tenkpc.forecast import compiled as columns
-from tenkpc.forecast import words
-from tenkpc.forecast.conversions import others
+from tenkpc.forecast.others import other_bursts, other_conversions
 from tenkpc.rendering import (
     Block,
     Facts,
@@ -100,7 +100,8 @@ def _seen(forecast: Forecast) -> Block:
             cells = (interactions.by_key(entry.key).equation, number(entry.counted, decimals))
             error = f"± {percent(entry.error)}"
             rows.append(Row((*cells, percent(share), error), level=1, bar=share))
-    rows += _collapsed(small, decimals, total)
+    seen = {row.interaction for row in forecast.rows if row.seen_as}
+    rows += _collapsed(small, seen, decimals, total)
     return Table(tuple(rows), ("seen as", "counted", "share", "cross section"))
 
 
@@ -131,36 +132,64 @@ def _groups(forecast: Forecast) -> list[tuple[str, list[_Entry]]]:
     return sorted(groups.items(), key=lambda group: -sum(e.counted for e in group[1]))
 
 
-def _collapsed(small: Sequence[_Entry], decimals: int, total: float) -> list[Row]:
+def _collapsed(
+    small: Sequence[_Entry], seen: Collection[str], decimals: int, total: float
+) -> list[Row]:
     """One line for rows too small to print, one for what the medium does not see at all."""
     few = sorted({entry.key for entry in small if entry.counted > 0})
-    unseen = sorted({entry.key for entry in small} - set(few))
+    unseen = sorted({entry.key for entry in small if entry.counted == 0})
     counted = sum(entry.counted for entry in small)
     rows = []
     if few:
         name = f"smaller: {', '.join(few)}"
         rows.append(Row((name, number(counted, decimals), percent(counted / total))))
     if unseen:
-        rows.append(Row((f"not seen: {', '.join(unseen)}",)))
+        names = ", ".join(f"part of {key}" if key in seen else key for key in unseen)
+        rows.append(Row((f"not seen: {names}",)))
     return rows
 
 
 def _uncertainty(forecast: Forecast) -> Block:
-    scale = forecast.total or 1.0
-    fall, rise = forecast.cross_section_error
-    decimals = decimals_for(max(fall, rise))
-    rows = [
-        ("chance", _chance(forecast)),
-        (
-            "cross sections",
-            f"− {number(fall, decimals)} + {number(rise, decimals)} in 68 % of cases,"
-            f" − {percent(fall / scale)} + {percent(rise / scale)}",
-        ),
-    ]
+    """Lines of uncertainty, each in counts and per cent; then ranges and background."""
+    rows = [("chance", _chance(forecast))]
+    for name, effects in (
+        ("cross sections", budget.cross_sections(forecast)),
+        ("detector", budget.detector(forecast)),
+        ("mixing angles", budget.mixing(forecast)),
+    ):
+        fall, rise = budget.combined(effects)
+        if fall or rise:
+            rows.append((name, _error(fall, rise, forecast.total)))
+        if name == "cross sections" and forecast.total > 0:
+            rows.append(("both", _both(forecast)))
     if forecast.total > 0:
-        factors = [f"× {other.total / scale:.2f} {name}" for name, other in others(forecast)]
-        rows.append(("other conversions", ", ".join(factors)))
+        rows.append(("other conversions", _factors(forecast, other_conversions(forecast))))
+        rows.append(("other bursts", _factors(forecast, other_bursts(forecast))))
+    if forecast.detector.backgrounds:
+        rows.append(("background", _background(forecast)))
     return Facts(tuple(rows))
+
+
+def _error(fall: float, rise: float, total: float) -> str:
+    decimals, scale = decimals_for(max(fall, rise)), total or 1.0
+    counts = f"− {number(fall, decimals)} + {number(rise, decimals)} in 68 % of cases"
+    return f"{counts}, − {percent(fall / scale)} + {percent(rise / scale)}"
+
+
+def _both(forecast: Forecast) -> str:
+    span = forecast.predictive
+    return f"{number(span.low)} to {number(span.high)} in 68 % of bursts"
+
+
+def _factors(forecast: Forecast, cases: Sequence[tuple[str, Forecast]]) -> str:
+    ratios = ((other.total / forecast.total, name) for name, other in cases)
+    return ", ".join(f"× {ratio:.2f} {name}" for ratio, name in ratios)
+
+
+def _background(forecast: Forecast) -> str:
+    events = forecast.background_events
+    span = f"{forecast.live_s:.3g} s"
+    return f"{number(events, decimals_for(events))} events in {span}, in no total"
 
 
 def _chance(forecast: Forecast) -> str:
@@ -173,8 +202,8 @@ def _chance(forecast: Forecast) -> str:
 
 
 def _warnings(forecast: Forecast) -> list[str]:
-    outside = forecast.values[:, columns.COUNTED_OUTSIDE]
-    share = outside / np.maximum(_counted(forecast), 1e-300)
+    outside = forecast.by_interaction[:, columns.COUNTED_OUTSIDE]
+    share = outside / np.maximum(forecast.counted, 1e-300)
     lines = [
         f"Beware: {percent(part)} of {key} comes from energies beyond its cross section's window."
         for key, part in zip(forecast.keys, share, strict=True)
@@ -187,11 +216,10 @@ def _warnings(forecast: Forecast) -> list[str]:
 
 
 def _foot(forecast: Forecast) -> list[str]:
-    largest = np.argsort(-_counted(forecast), kind="stable")[:SOURCES_FOR]
-    outside = forecast.values[:, columns.COUNTED_OUTSIDE].sum() / (forecast.total or 1.0)
+    outside = forecast.by_interaction[:, columns.COUNTED_OUTSIDE].sum() / (forecast.total or 1.0)
     sources = [
-        f"{forecast.keys[place]}: {'; '.join(map(str, _references(forecast, place)))}."
-        for place in largest
+        f"{key}: {'; '.join(map(str, references))}."
+        for key, references in words.largest_sources(forecast, SOURCES_FOR)
     ]
     return [
         *(f"Note: {note}" for note in forecast.burst.notes),
@@ -199,12 +227,3 @@ def _foot(forecast: Forecast) -> list[str]:
         f"From neutrino energies outside the cross sections' windows: {percent(outside)}.",
         f"Again: {words.command(forecast)}",
     ]
-
-
-def _counted(forecast: Forecast) -> Floats:
-    counted: Floats = forecast.values[:, columns.FIRST_BIN :].sum(axis=1)
-    return counted
-
-
-def _references(forecast: Forecast, place: int) -> tuple[object, ...]:
-    return interactions.by_key(forecast.keys[place]).references

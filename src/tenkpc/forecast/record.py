@@ -3,18 +3,77 @@
 from __future__ import annotations
 
 import json
+import warnings
+from collections.abc import Mapping
 from typing import TYPE_CHECKING, Any
 
-from tenkpc import __version__, interactions
+from tenkpc import __version__, data, interactions
+from tenkpc.detector.detector import Detector
+from tenkpc.documents import Document
+from tenkpc.errors import InputError
 from tenkpc.forecast.frames import named
+from tenkpc.propagation import conversion
+from tenkpc.source.burst import Burst
 
 if TYPE_CHECKING:
     from tenkpc.forecast.forecast import Forecast
+
+# totals of one version agree to this: the same sums in the same order, but for the library's
+SAME = 1e-10
 
 
 def to_json(forecast: Forecast) -> str:
     """Write results, inputs, version and sources as JSON text."""
     return json.dumps(_record(forecast), indent=2, ensure_ascii=False, allow_nan=False)
+
+
+def from_json(text: str, kind: type[Forecast]) -> Forecast:
+    """Make a forecast again, and warn where its total is not the one that was written.
+
+    Raises
+    ------
+    InputError
+        where the text is no record of a forecast.
+    """
+    try:
+        record = json.loads(text)
+        made = _made(record["inputs"], kind)
+        written, version = float(record["total"]), str(record["tenkpc_version"])
+        fingerprint = str(record["data"])
+    except (json.JSONDecodeError, KeyError, TypeError, AttributeError, ValueError) as error:
+        if isinstance(error, InputError):
+            raise
+        message = f"expected what to_json wrote; found something else ({error})"
+        raise InputError(message) from None
+    differing = [
+        f"{what} {then}, now {now}"
+        for what, then, now in (
+            ("version", version, __version__),
+            ("data files", fingerprint, data.fingerprint()),
+        )
+        if then != now
+    ]
+    if abs(made.total - written) > SAME * abs(written):
+        differing.append(f"total {written:.10g}, now {made.total:.10g}")
+    if differing:
+        warnings.warn(f"not as it was written: {'; '.join(differing)}", stacklevel=3)
+    return made
+
+
+def _made(inputs: Mapping[str, Any], kind: type[Forecast]) -> Forecast:
+    made = kind(
+        Detector.of_document(Document.of_record(inputs["detector"])),
+        Burst.of_document(Document.of_record(inputs["burst"])),
+        distance=f"{inputs['distance_kpc']!r} kpc",
+        conversion=conversion.of_record(inputs["conversion"]),
+        interactions=inputs["interactions"],
+    )
+    window = inputs["window_s"]
+    return made._with(
+        window_s=None if window is None else tuple(window),
+        energy_above_mev=inputs["energy_above_mev"],
+        background_time_s=inputs["background_time_s"],
+    )
 
 
 def _record(forecast: Forecast) -> dict[str, Any]:
@@ -23,11 +82,13 @@ def _record(forecast: Forecast) -> dict[str, Any]:
     reactions, above, counted = forecast.chain
     return {
         "tenkpc_version": __version__,
+        "data": data.fingerprint(),
         "inputs": _inputs(forecast),
         "total": forecast.total,
         "chain": {"reactions": reactions, "above_threshold": above, "counted": counted},
         "chance_68_percent": [chance.low, chance.high],
         "cross_section_error": {"down": fall, "up": rise},
+        "background": {"live_s": forecast.live_s, "counted": forecast.background_events},
         "counts": _counts(forecast),
         "sources": {
             key: [str(source) for source in interactions.by_key(key).references]
@@ -37,27 +98,22 @@ def _record(forecast: Forecast) -> dict[str, Any]:
 
 
 def _inputs(forecast: Forecast) -> dict[str, Any]:
-    detector, burst = forecast.detector, forecast.burst
     return {
-        "detector": {
-            "origin": detector.origin,
-            "text": detector.text,
-            "tables": dict(detector.tables),
-            "changes": dict(detector.changes),
-        },
-        "burst": {"origin": burst.origin, "text": burst.text, "changes": dict(burst.changes)},
+        "detector": forecast.detector.document.record(),
+        "burst": forecast.burst.document.record(),
         "distance_kpc": forecast.distance_kpc,
-        "conversion": forecast.conversion.describe(),
+        "conversion": forecast.conversion.record(),
         "survival": dict(zip(("nu_e", "anti_nu_e"), forecast.conversion.survival, strict=True)),
         "interactions": forecast.interactions,
         "window_s": forecast.window_s,
         "energy_above_mev": forecast.energy_above_mev,
-        "observed_energy": detector.response.kind,
+        "background_time_s": forecast.background_time_s,
+        "observed_energy": forecast.detector.response.kind,
     }
 
 
 def _counts(forecast: Forecast) -> dict[str, dict[str, float]]:
-    table = named(forecast.values)
+    table = named(forecast.by_interaction)
     return {
         key: {name: float(column[place]) for name, column in table.items()}
         for place, key in enumerate(forecast.keys)

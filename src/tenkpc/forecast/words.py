@@ -6,16 +6,16 @@ import shlex
 from collections.abc import Iterator
 from typing import TYPE_CHECKING
 
+from tenkpc import interactions
 from tenkpc.detector import gallery
+from tenkpc.detector.media import MEDIA
 from tenkpc.detector.response import Curve, Resolution
+from tenkpc.interactions.base import Reference
 from tenkpc.rendering import decimals_for, number, percent
 from tenkpc.source.burst import Burst
 
 if TYPE_CHECKING:
     from tenkpc.forecast.forecast import Forecast
-
-# what light or charge a medium is seen by
-MEDIA = {"cherenkov": "Cherenkov light"}
 
 Assumption = tuple[str, str, str]
 
@@ -24,25 +24,32 @@ def opening(forecast: Forecast) -> str:
     """Say in one sentence what was counted, where, and of what."""
     detector = forecast.detector
     total = number(forecast.total, decimals_for(forecast.total))
+    part = window_clause(forecast).rstrip(",")
     return (
-        f"{detector.title}, {_filling(forecast)}, counts {total} events "
+        f"{detector.title}, {filling(forecast)}, counts {total} events "
         f"of the burst “{forecast.burst.title}” at {distance(forecast.distance_kpc)}, with "
-        f"{forecast.conversion.describe()}{_window(forecast)}. {_counted(forecast)}"
+        f"{forecast.conversion.describe()}{part}. {_counted(forecast)}"
     )
 
 
-def _filling(forecast: Forecast) -> str:
+def filling(forecast: Forecast) -> str:
     """Say what is in the detector and how it sees: ``40 kt light water, by Cherenkov light``."""
     detector = forecast.detector
     parts = [f"{mass(volume.mass_kg)} {volume.material}" for volume in detector.volumes]
-    return f"{' and '.join(parts)} seen by {MEDIA[detector.medium]}"
+    return f"{' and '.join(parts)} seen by {MEDIA[detector.medium].words}"
 
 
-def _window(forecast: Forecast) -> str:
+def window(forecast: Forecast) -> str:
+    """Say which part of the burst is counted."""
     if forecast.window_s is None:
-        return ""
+        return "the whole burst"
     start, end = forecast.window_s
-    return f", between {start:g} s and {end:g} s after bounce"
+    return f"{start:g} s to {end:g} s after bounce"
+
+
+def window_clause(forecast: Forecast) -> str:
+    """Say which part of the burst is counted where it is not all of it, after a comma."""
+    return "" if forecast.window_s is None else f", from {window(forecast)},"
 
 
 def _counted(forecast: Forecast) -> str:
@@ -134,6 +141,24 @@ def _of_detector(forecast: Forecast) -> Iterator[Assumption]:
     )
     for key, name, value in rows:
         yield name, value, detector.origin if key in given else "default"
+    yield "light of protons", detector.proton_light, detector.origin
+    for source in detector.backgrounds:
+        rate = f"{source.rate_hz:.4g} Hz above the threshold"
+        yield f"background {source.name}", rate, detector.origin
+    errors = {
+        "mass": detector.mass_error,
+        "efficiency": detector.efficiency_error,
+        "energy scale": detector.scale_error,
+    }
+    for name, error in errors.items():
+        yield f"error of {name}", percent(error), detector.origin if error else "default"
+
+
+def largest_sources(forecast: Forecast, most: int) -> list[tuple[str, tuple[Reference, ...]]]:
+    """Sources of the interactions that count most, the largest first."""
+    ranked = sorted(zip(forecast.counted, forecast.keys, strict=True), key=lambda pair: -pair[0])
+    keys = [key for count, key in ranked[:most] if count > 0]
+    return [(key, interactions.by_key(key).references) for key in keys]
 
 
 def command(forecast: Forecast) -> str:
@@ -163,7 +188,7 @@ def _beyond_the_shell(forecast: Forecast) -> Iterator[str]:
     if forecast.energy_above_mev is not None:
         yield "a cut in energy"
     choices = {key: value for key, value in forecast.interactions.items() if value is not False}
-    changes = [*detector.changes, *burst.changes, *choices.items()]
+    changes = [*detector.document.changes, *burst.document.changes, *choices.items()]
     yield from (f"{key} = {value}" for key, value in changes)
 
 

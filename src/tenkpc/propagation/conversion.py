@@ -19,15 +19,15 @@ separately for both, and that is checked whenever a flux is converted.
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections.abc import Callable, Mapping
 from dataclasses import dataclass
-from typing import Protocol
+from typing import Any, Protocol
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
 from tenkpc.errors import ComputationError, InputError, UnknownNameError
-from tenkpc.propagation.mixing import DEFAULT_FIT, mixing_parameters
+from tenkpc.propagation.mixing import DEFAULT_FIT, electron_shares, mixing_parameters
 from tenkpc.species import ANTI_NU_E, ANTI_NU_X, NU_E, NU_X, SPECIES
 
 Floats = NDArray[np.float64]
@@ -56,6 +56,12 @@ class Conversion(Protocol):
 
     def options(self) -> tuple[str, ...]:
         """Options of the shell that ask for it; none where there are none."""
+
+    def record(self) -> dict[str, Any]:
+        """All that `of_record` needs to make it again, for JSON."""
+
+    def within_errors(self) -> tuple[tuple[str, Conversion, Conversion], ...]:
+        """Each parameter that has an error, with the conversions for it 1σ low and high."""
 
 
 class _Constant:
@@ -89,6 +95,14 @@ class _Constant:
 
     def options(self) -> tuple[str, ...]:
         """None: the shell has no options for it."""
+        return ()
+
+    def record(self) -> dict[str, Any]:
+        """All that `of_record` needs to make it again: the class and its arguments."""
+        return {"conversion": type(self).__name__.lower(), **vars(self)}
+
+    def within_errors(self) -> tuple[tuple[str, Conversion, Conversion], ...]:
+        """None: no parameter has an error."""
         return ()
 
 
@@ -170,6 +184,24 @@ class Adiabatic(_Constant):
         if self.mixing != DEFAULT_FIT:
             return ()
         return "--conversion", "adiabatic", "--ordering", self.ordering
+
+    def within_errors(self) -> tuple[tuple[str, Conversion, Conversion], ...]:
+        """Both mixing angles, 1σ low and high, as pairs of survival probabilities."""
+        central = mixing_parameters(self.ordering, self.mixing)
+        angles = {"sin2_theta12": central.sin2_theta12, "sin2_theta13": central.sin2_theta13}
+        found = []
+        for name, angle in angles.items():
+            ends = (-(angle.error_down or 0.0), angle.error_up or 0.0)
+            low, high = (self._with_angle(name, angle.value + step) for step in ends)
+            found.append((name, low, high))
+        return tuple(found)
+
+    def _with_angle(self, name: str, value: float) -> Survival:
+        central = mixing_parameters(self.ordering, self.mixing)
+        both = {key: getattr(central, key).value for key in ("sin2_theta12", "sin2_theta13")}
+        shares = electron_shares(**{**both, name: value})
+        nu_e, anti_nu_e = crossing_survival(shares, self.ordering, high=0.0, low=0.0)
+        return Survival(nu_e=nu_e, anti_nu_e=anti_nu_e)
 
 
 @dataclass(frozen=True)
@@ -320,6 +352,19 @@ WORDS: dict[str, Callable[[str], Conversion]] = {
     "equilibrated": lambda ordering: Equilibrated(),
     "unconverted": lambda ordering: Unconverted(),
 }
+
+
+def of_record(record: Mapping[str, Any]) -> Conversion:
+    """Make a conversion from what its `record` said."""
+    kinds = {
+        kind.__name__.lower(): kind for kind in (Adiabatic, Equilibrated, Survival, Unconverted)
+    }
+    arguments = {key: value for key, value in record.items() if key != "conversion"}
+    if record["conversion"] not in kinds:
+        kind = "flavour conversion"
+        raise UnknownNameError(kind, record["conversion"], kinds)
+    made: Conversion = kinds[record["conversion"]](**arguments)
+    return made
 
 
 def parse(name: str, ordering: str = "normal") -> Conversion:

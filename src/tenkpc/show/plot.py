@@ -16,8 +16,8 @@ from numpy.typing import NDArray
 
 from tenkpc import interactions
 from tenkpc.forecast import words
-from tenkpc.forecast.conversions import others
 from tenkpc.forecast.forecast import Forecast
+from tenkpc.forecast.others import other_conversions
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
@@ -91,7 +91,7 @@ def spectrum(
     if below is not None:
         totals = [
             (name, other.spectrum(bins=bins).iloc[:-1][ranked].sum(axis=1).to_numpy())
-            for name, other in others(forecast)
+            for name, other in other_conversions(forecast)
         ]
         _factors(below, totals, heights[-1], edges)
     lowest.set_xlabel(f"observed {forecast.detector.response.kind} energy [MeV]")
@@ -137,7 +137,7 @@ def light_curve(
     _name_curves(main, names, curves, edges)
     if below is not None:
         totals = []
-        for name, other in others(forecast):
+        for name, other in other_conversions(forecast):
             counted = other.light_curve(quantities)[ranked].sum(axis=1).to_numpy()
             totals.append((name, counted))
         _factors(below, totals, total * widths, edges)

@@ -7,6 +7,7 @@ from collections.abc import Iterator
 
 from tenkpc.constants import MEV_PER_ERG
 from tenkpc.source.burst_file import (
+    AnyKeys,
     BurstKeys,
     BySpecies,
     CoreKeys,
@@ -14,17 +15,25 @@ from tenkpc.source.burst_file import (
     FourValues,
     IntegratedKeys,
     PeakKeys,
+    TwoPhaseKeys,
 )
-from tenkpc.source.components import Core, Integrated, Peak, Pinched, Thermal
+from tenkpc.source.components import Core, Flowing, Integrated, Peak, Pinched, Thermal
+from tenkpc.source.two_phase import TwoPhase
 
 NOTHING: FourValues = (0.0, 0.0, 0.0, 0.0)
 
 
-def component(keys: PeakKeys | CoreKeys | IntegratedKeys) -> Peak | Core | Integrated:
+def component(keys: AnyKeys) -> Flowing | Integrated:
     """Build the component that a table of the file describes."""
-    if isinstance(keys, PeakKeys):
-        return _peak(keys)
-    return _core(keys) if isinstance(keys, CoreKeys) else _integrated(keys)
+    match keys:
+        case PeakKeys():
+            return _peak(keys)
+        case CoreKeys():
+            return _core(keys)
+        case TwoPhaseKeys():
+            return _two_phase(keys)
+        case IntegratedKeys():
+            return _integrated(keys)
 
 
 def notes(keys: BurstKeys) -> Iterator[str]:
@@ -39,13 +48,13 @@ def notes(keys: BurstKeys) -> Iterator[str]:
         yield f"nu_x_sum_of_four is divided by four for nu_x and anti_nu_x each ({names})"
 
 
-def _doubled(keys: PeakKeys | CoreKeys | IntegratedKeys) -> Iterator[bool]:
+def _doubled(keys: AnyKeys) -> Iterator[bool]:
     for _, value in keys:
         if isinstance(value, BySpecies | Emission):
             yield value.nu_x is not None and value.anti_nu_x is None
 
 
-def _summed(keys: PeakKeys | CoreKeys | IntegratedKeys) -> Iterator[bool]:
+def _summed(keys: AnyKeys) -> Iterator[bool]:
     for _, value in keys:
         yield isinstance(value, Emission) and value.nu_x_sum_of_four is not None
 
@@ -68,6 +77,22 @@ def _integrated(keys: IntegratedKeys) -> Integrated:
     else:
         spectrum = Thermal(_values(keys.temperature), _values(keys.degeneracy))
     return Integrated(_emitted_mev(keys.energy_each), spectrum)
+
+
+def _two_phase(keys: TwoPhaseKeys) -> TwoPhase:
+    return TwoPhase(
+        radius_cm=keys.cooling_radius,
+        temperature_mev=keys.cooling_temperature,
+        cooling_time_s=keys.cooling_time,
+        accreting_solar_masses=keys.accreting_solar_masses,
+        neutron_share=keys.neutron_fraction,
+        accretion_temperature_mev=keys.accretion_temperature,
+        accretion_time_s=keys.accretion_time,
+        accretion_sharpness=keys.accretion_sharpness,
+        warming_power=keys.warming_power,
+        x_temperature_ratio=keys.x_temperature_ratio,
+        rise_time_s=keys.rise_time,
+    )
 
 
 def _core(keys: CoreKeys) -> Core:

@@ -12,10 +12,11 @@ from numpy.typing import ArrayLike, NDArray
 
 from tenkpc import data, textfiles
 from tenkpc.constants import MEV_PER_ERG
-from tenkpc.errors import FileError, InputError, Problem, UnknownNameError
+from tenkpc.documents import Document
+from tenkpc.errors import InputError, UnknownNameError
 from tenkpc.source import assembly, panels
 from tenkpc.source.burst_file import BurstKeys
-from tenkpc.source.components import Core, Integrated, Peak
+from tenkpc.source.components import Flowing, Integrated
 from tenkpc.source.summary import Summary
 
 Floats = NDArray[np.float64]
@@ -42,23 +43,17 @@ class Burst:
         its parts, whose emission adds.
     notes
         sentences about what was set without being written.
-    text
-        the file as it was read, or one that says the same.
-    origin
-        where it was read from; the name of a preset.
-    changes
-        key paths changed by `replace`, in order, with their new values.
+    document
+        the file as it was read, or one that says the same, and what was changed since.
     """
 
     title: str
     about: str
     start_s: float
     end_s: float
-    components: tuple[Peak | Core | Integrated, ...]
+    components: tuple[Flowing | Integrated, ...]
     notes: tuple[str, ...] = field(compare=False, default=())
-    text: str = field(compare=False, default="", repr=False)
-    origin: str = field(compare=False, default="burst")
-    changes: tuple[tuple[str, str], ...] = field(compare=False, default=())
+    document: Document = field(compare=False, default=Document(""), repr=False)
 
     @classmethod
     def load(cls, path: str | Path) -> Burst:
@@ -69,12 +64,29 @@ class Burst:
         FileError
             with everything that is wrong with the file, each with its line.
         """
-        return cls.parse(textfiles.read_text(Path(path)), origin=str(path))
+        return cls.of_document(Document.read(path))
 
     @classmethod
     def parse(cls, text: str, origin: str = "burst") -> Burst:
         """Read a burst from the text of a file."""
-        return cls._build(text, textfiles.parse(text, BurstKeys, origin), origin, ())
+        return cls.of_document(Document(text, origin=origin))
+
+    @classmethod
+    def of_document(cls, document: Document) -> Burst:
+        """Read a burst from a document, with the changes made to it."""
+        keys = document.checked(BurstKeys)
+        if keys.start >= keys.end:
+            message = f"must be later than start; found {keys.end:g} s after {keys.start:g} s"
+            raise document.refused([(("end",), message)])
+        return cls(
+            title=keys.title,
+            about=keys.about,
+            start_s=keys.start,
+            end_s=keys.end,
+            components=tuple(assembly.component(table) for table in keys.component),
+            notes=tuple(assembly.notes(keys)),
+            document=document.with_tables(keys),
+        )
 
     @classmethod
     def presets(cls) -> tuple[str, ...]:
@@ -149,12 +161,18 @@ class Burst:
         FileError
             where a path or value is not one that a burst file may have.
         """
-        new = tuple((path, textfiles.as_text(value)) for path, value in changes.items())
-        made = (*self.changes, *new)
-        document = textfiles.document(self.text, self.origin)
-        document = textfiles.changed(document, [(_in_file(p), v) for p, v in made], self.origin)
-        keys = textfiles.validate(document, BurstKeys, self.origin)
-        return self._build(self.text, keys, self.origin, made)
+        in_file = {_in_file(path): value for path, value in changes.items()}
+        return self.of_document(self.document.changed(in_file))
+
+    @property
+    def text(self) -> str:
+        """The file as it was read, without the changes made since."""
+        return self.document.text
+
+    @property
+    def origin(self) -> str:
+        """Path of the file, or name of the preset."""
+        return self.document.origin
 
     @property
     def time_integrated(self) -> bool:
@@ -247,7 +265,7 @@ class Burst:
         total: Floats = np.sum(parts, axis=0) * self._covers(times)
         return total
 
-    def _flowing(self) -> list[Peak | Core]:
+    def _flowing(self) -> list[Flowing]:
         parts = [part for part in self.components if not isinstance(part, Integrated)]
         if not parts:
             message = (
@@ -258,25 +276,6 @@ class Burst:
 
     def _covers(self, times: Floats) -> NDArray[np.bool_]:
         return (times >= self.start_s) & (times <= self.end_s)
-
-    @classmethod
-    def _build(
-        cls, text: str, keys: BurstKeys, origin: str, changes: tuple[tuple[str, str], ...]
-    ) -> Burst:
-        if keys.start >= keys.end:
-            message = f"must be later than start; found {keys.end:g} s after {keys.start:g} s"
-            raise FileError(origin, [Problem(textfiles.line_of(text, ("end",)), "end", message)])
-        return cls(
-            title=keys.title,
-            about=keys.about,
-            start_s=keys.start,
-            end_s=keys.end,
-            components=tuple(assembly.component(table) for table in keys.component),
-            notes=tuple(assembly.notes(keys)),
-            text=text,
-            origin=origin,
-            changes=changes,
-        )
 
 
 def _in_file(path: str) -> str:

@@ -11,7 +11,7 @@ from typing import Annotated, Any, Generic, Literal, TypeVar
 
 from pydantic import Field
 
-from tenkpc.fields import InUnit
+from tenkpc.fields import Fraction, InUnit
 from tenkpc.textfiles import Strict
 
 Problems = Iterable[tuple[tuple[str | int, ...], str]]
@@ -169,7 +169,26 @@ class IntegratedKeys(Strict):
             yield from _all_or_none(raw, ("temperature", "degeneracy"))
 
 
-ComponentKeys = Annotated[PeakKeys | CoreKeys | IntegratedKeys, Field(discriminator="kind")]
+class TwoPhaseKeys(Strict):
+    """`kind = "two-phase"`: accretion by positrons on neutrons, then a cooling thermal sphere."""
+
+    name: Annotated[str, Field(min_length=1)]
+    kind: Literal["two-phase"]
+    rise_time: Span
+    accreting_solar_masses: Annotated[float, Field(gt=0, le=10)]
+    neutron_fraction: Fraction
+    accretion_temperature: SpectralEnergy
+    accretion_time: Span
+    accretion_sharpness: Sharpness
+    warming_power: Annotated[float, Field(gt=0, le=20)]
+    cooling_radius: Annotated[float, InUnit("cm", "15 km", above=0.0)]
+    cooling_temperature: SpectralEnergy
+    cooling_time: Span
+    x_temperature_ratio: Annotated[float, Field(gt=0, le=10)] = 1.0
+
+
+AnyKeys = PeakKeys | CoreKeys | IntegratedKeys | TwoPhaseKeys
+ComponentKeys = Annotated[AnyKeys, Field(discriminator="kind")]
 
 
 class BurstKeys(Strict):

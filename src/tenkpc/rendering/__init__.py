@@ -16,6 +16,7 @@ from dataclasses import dataclass
 WIDTH = 78
 BAR_WIDTH = 12
 INDENT = "  "
+GROUPS = "\u202f"  # a narrow blank that does not break
 
 
 @dataclass(frozen=True)
@@ -92,10 +93,10 @@ def pad(words: str, width: int, *, right: bool = False) -> str:
 
 
 def number(value: float, decimals: int = 0) -> str:
-    """Print a number with thin groups of three digits and the given decimals."""
+    """Print a number in groups of three digits, which no line break parts, to given decimals."""
     if not math.isfinite(value):
         return "∞" if value > 0 else "—"
-    return f"{value:,.{decimals}f}".replace(",", " ")
+    return f"{value:,.{decimals}f}".replace(",", GROUPS)
 
 
 def decimals_for(value: float) -> int:

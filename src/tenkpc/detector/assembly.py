@@ -1,0 +1,226 @@
+"""From the checked keys of a detector file to what the kernel works with."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass, field
+from functools import partial
+from itertools import pairwise
+from types import MappingProxyType
+from typing import Any
+
+from tenkpc import data
+from tenkpc.detector import materials
+from tenkpc.detector.background import SHAPES, Background, lies_above
+from tenkpc.detector.detector_file import COMPOSITIONS, BackgroundKeys, DetectorKeys, VolumeKeys
+from tenkpc.detector.materials import Composition
+from tenkpc.detector.media import EVENT_OFFSETS_MEV, MEDIA
+from tenkpc.detector.quenching import Light, Plain, Quenched, quenched_protons
+from tenkpc.detector.response import Curve, Resolution, Response
+from tenkpc.detector.response_file import EfficiencyKeys, ResponseKeys
+from tenkpc.documents import Document
+from tenkpc.fields import BIRKS_PER_LENGTH
+from tenkpc.interactions.base import HIGHEST_ENERGY_MEV
+
+# the fastest proton that a neutrino of the highest energy knocks on: 2E²/(M + 2E), rounded up
+FASTEST_PROTON_MEV = 60.0
+
+
+@dataclass(frozen=True)
+class Volume:
+    """So much of one material, and how it responds."""
+
+    name: str
+    mass_kg: float
+    material: str
+    composition: Composition = field(compare=False)
+    response: Response = field(compare=False)
+
+    def targets(self, kind: str) -> float:
+        """Count the targets of a kind: ``"electron"`` or a nuclide such as ``"H-1"``."""
+        return self.mass_kg * self.composition.targets(kind)
+
+
+def volumes(keys: DetectorKeys, document: Document) -> tuple[Volume, ...]:
+    """Build every volume with its response.
+
+    Raises
+    ------
+    FileError
+        where a table or a curve is not usable.
+    """
+    curve = _efficiency(keys.response, document)
+    known: dict[tuple[Light | None, ...], Response] = {}
+    made = []
+    for volume in keys.volume:
+        composition = _composition(volume)[1]
+        light = _proton_light(keys.response, volume, composition, document)
+        if (light,) not in known:
+            known[light,] = _response(keys, curve, light)
+        words = _composition(volume)[0]
+        made.append(Volume(volume.name, volume.mass, words, composition, known[light,]))
+    return tuple(made)
+
+
+def backgrounds(keys: DetectorKeys, document: Document) -> tuple[Background, ...]:
+    """Build every background; a rate per mass is multiplied by the whole detector's mass.
+
+    Raises
+    ------
+    FileError
+        where a shape has nothing above the threshold, or a table is not usable.
+    """
+    mass_kg = sum(volume.mass for volume in keys.volume)
+    threshold_mev = _threshold_mev(keys.response)
+    return tuple(
+        _background(table, place, mass_kg, threshold_mev, document)
+        for place, table in enumerate(keys.background)
+    )
+
+
+def _composition(keys: VolumeKeys) -> tuple[str, Composition]:
+    """Words for what a volume is made of, and the composition."""
+    key = next(key for key in COMPOSITIONS if getattr(keys, key) is not None)
+    made_of = getattr(keys, key)
+    words = made_of if isinstance(made_of, str) else " + ".join(made_of)
+    return words, COMPOSITIONS[key](made_of)
+
+
+def _response(keys: DetectorKeys, efficiency: Curve, protons: Light | None) -> Response:
+    given = keys.response
+    width, medium = given.resolution, MEDIA[given.medium]
+    of_truth = given.efficiency is not None and given.efficiency.of == "true"
+    light = dict(medium.light) if protons is None else {**medium.light, "proton": protons}
+    return Response(
+        kind=given.kind,
+        light=MappingProxyType(light),
+        event_offset_mev=EVENT_OFFSETS_MEV[given.kind],
+        resolution=Resolution(
+            width.stochastic, width.constant, width.noise, linear=width.combine == "linear"
+        ),
+        threshold_mev=_threshold_mev(given),
+        efficiency=Curve() if of_truth else efficiency,
+        true_efficiency=efficiency if of_truth else Curve(),
+        live_fraction=given.live_fraction,
+        scale_error=keys.uncertainty.energy_scale,
+    )
+
+
+def _threshold_mev(keys: ResponseKeys) -> float:
+    """Threshold in the observed kind of energy."""
+    if keys.threshold is None:
+        return 0.0
+    given_in = keys.threshold.of or keys.kind
+    shift = EVENT_OFFSETS_MEV[keys.kind] - EVENT_OFFSETS_MEV[given_in]
+    return max(keys.threshold.value + shift, 0.0)
+
+
+def _proton_light(
+    keys: ResponseKeys, volume: VolumeKeys, composition: Composition, document: Document
+) -> Light | None:
+    """What the light of protons is worth in a volume; None where they are not seen."""
+    if keys.birks is not None:
+        constant, unit = keys.birks
+        density = _density(volume) if unit == BIRKS_PER_LENGTH else 1.0
+        atoms = {symbol: n / 1e3 for symbol, n in materials.elements(composition).items()}
+        table = data.document("stopping/protons.toml")
+        return quenched_protons(atoms, table, constant * density)
+    if keys.quenching is None:
+        return None
+    if keys.quenching.file is None:
+        return Plain()
+    return _light_table(keys.quenching.file, keys.quenching.beyond == "extend", document)
+
+
+def _density(keys: VolumeKeys) -> float:
+    """Density in g/cm³: as given, or that of the named material."""
+    return keys.density or materials.named(keys.material or "").density_g_cm3
+
+
+def _light_table(file: str, extend: bool, document: Document) -> Quenched:
+    columns = document.columns(file, ("kinetic_mev", "visible_mev"))
+    kinetic, visible = columns["kinetic_mev"], columns["visible_mev"]
+    problem = ""
+    if not _ascending(kinetic) or not _ascending(visible) or kinetic[0] < 0 or visible[0] < 0:
+        problem = "expected kinetic and visible energies that ascend from zero"
+    elif kinetic[-1] < FASTEST_PROTON_MEV and not extend:
+        problem = (
+            f"the table ends at {kinetic[-1]:g} MeV and protons have up to "
+            f'{FASTEST_PROTON_MEV:g} MeV; say beyond = "extend" to go on with its last slope'
+        )
+    if problem:
+        raise document.refused([(("response", "quenching"), problem)])
+    start = [] if kinetic[0] == 0 else [0.0]
+    return Quenched((*start, *kinetic), (*start, *visible))
+
+
+def _efficiency(keys: ResponseKeys, document: Document) -> Curve:
+    """Curve of an efficiency; perfect where none is given."""
+    given = keys.efficiency
+    if given is None:
+        return Curve()
+    if given.value is not None:
+        return Curve((0.0,), (given.value,))
+    points = given.points or ()
+    if given.file is not None:
+        columns = document.columns(given.file, ("energy_mev", "efficiency"))
+        points = tuple(zip(columns["energy_mev"], columns["efficiency"], strict=True))
+    problem = _unusable(points, given, _threshold_mev(keys))
+    if problem:
+        raise document.refused([(("response", "efficiency"), problem)])
+    energies, values = zip(*points, strict=True)
+    return Curve(tuple(energies), tuple(values), zero_outside=given.beyond == "zero")
+
+
+def _unusable(
+    points: Sequence[tuple[float, float]], keys: EfficiencyKeys, threshold_mev: float
+) -> str:
+    """Say what keeps points from being an efficiency curve; nothing where they are one."""
+    energies = [energy for energy, _ in points]
+    if not points or not _ascending(energies):
+        return "expected points with ascending energies"
+    if not all(0 <= value <= 1 for _, value in points):
+        return "an efficiency lies between 0 and 1"
+    needed = threshold_mev if keys.of == "observed" else 0.0
+    if keys.beyond == "error" and (energies[0] > needed or energies[-1] < HIGHEST_ENERGY_MEV):
+        span = f"{energies[0]:g} to {energies[-1]:g} MeV"
+        return f'the points cover {span} only; say what holds beyond: "hold" or "zero"'
+    return ""
+
+
+def _background(
+    keys: BackgroundKeys, place: int, mass_kg: float, threshold_mev: float, document: Document
+) -> Background:
+    form, _ = SHAPES[keys.shape]
+    problem, parameters = "", _parameters(keys)
+    if keys.file is not None:
+        columns = document.columns(keys.file, ("energy_mev", "density"))
+        energies, densities = columns["energy_mev"], columns["density"]
+        if len(energies) < 2 or not _ascending(energies) or min(densities) < 0:
+            problem = (
+                "expected at least two ascending energies with densities that are not negative"
+            )
+        parameters = {"energies": tuple(energies), "densities": tuple(densities)}
+    elif keys.start is not None and keys.end is not None and keys.start >= keys.end:
+        problem = "expected from to be less than to"
+    elif keys.shape == "power" and keys.start == 0:
+        problem = "a power starts above zero"
+    elif 0.0 in (keys.mean if keys.shape == "exponential" else None, keys.width):
+        problem = "expected a mean or width above zero"
+    cumulative = partial(form, **parameters)
+    if not problem and not lies_above(cumulative, threshold_mev):
+        problem = f"nothing of its shape lies above the threshold of {threshold_mev:g} MeV"
+    if problem:
+        raise document.refused([(("background", place, "shape"), problem)])
+    scale = 1.0 if keys.per is None else mass_kg / keys.per
+    return Background(keys.name, keys.rate * scale, cumulative)
+
+
+def _parameters(keys: BackgroundKeys) -> dict[str, Any]:
+    """Parameters of a shape as they are given."""
+    names = ("start", "end", "mean", "width", "index")
+    return {name: value for name in names if (value := getattr(keys, name)) is not None}
+
+
+def _ascending(values: Sequence[float]) -> bool:
+    return all(later > earlier for earlier, later in pairwise(values))

@@ -1,0 +1,114 @@
+"""The `[response]` table of a detector file: which keys there are, and how they belong together.
+
+Shorthands (`threshold = "5 MeV"`, `efficiency = "94 %"`) are written out before the check, so
+that a key means the same however it was written. `[response]` is one model for all media: a
+misspelt medium must not hide the mistakes in the lines below it.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Mapping
+from typing import Annotated, Any, Literal
+
+from pydantic import BeforeValidator, Field
+
+from tenkpc.detector.media import MEDIA
+from tenkpc.fields import Birks, Energy, Fraction
+from tenkpc.textfiles import Strict
+
+Problems = Iterable[tuple[tuple[str | int, ...], str]]
+Kind = Literal["kinetic", "total", "visible"]
+
+
+def written_out(value: Any) -> Any:
+    """Turn a bare value into the table that it is short for."""
+    return value if isinstance(value, dict) else {"value": value}
+
+
+class ThresholdKeys(Strict):
+    """`threshold`: an energy, or an energy and the kind of energy it is given in."""
+
+    value: Energy
+    of: Kind | None = None
+
+
+class ResolutionKeys(Strict):
+    """`resolution`: σ/E = a/√(E/MeV) ⊕ b ⊕ c/E, added in quadrature or linearly."""
+
+    stochastic: Annotated[float, Field(ge=0, le=10)] = 0.0
+    constant: Annotated[float, Field(ge=0, le=10)] = 0.0
+    noise: Energy = 0.0
+    combine: Literal["quadrature", "linear"] = "quadrature"
+
+
+class EfficiencyKeys(Strict):
+    """`efficiency`: a share, or points of a curve, in the file or in a table beside it."""
+
+    value: Fraction | None = None
+    points: tuple[tuple[Energy, Fraction], ...] | None = None
+    file: str | None = None
+    of: Literal["observed", "true"] = "observed"
+    beyond: Literal["error", "hold", "zero"] = "error"
+
+    @classmethod
+    def cross_rules(cls, raw: Mapping[str, Any]) -> Problems:
+        """Check that the efficiency is given in exactly one way."""
+        given = [key for key in ("value", "points", "file") if key in raw]
+        if len(given) != 1:
+            yield (), f"give one of value, points and file; found {' and '.join(given) or 'none'}"
+
+
+class QuenchingKeys(Strict):
+    """`quenching`: a table of the light of protons, or the word that there is none."""
+
+    value: Literal["none"] | None = None
+    file: str | None = None
+    beyond: Literal["error", "extend"] = "error"
+
+    @classmethod
+    def cross_rules(cls, raw: Mapping[str, Any]) -> Problems:
+        """Check that it is either a table or the word."""
+        if ("value" in raw) == ("file" in raw):
+            yield (), 'expected "none", or { file = … } with a table of kinetic and visible energy'
+
+
+class ResponseKeys(Strict):
+    """`[response]`: what the instrument makes of an event."""
+
+    medium: Literal["cherenkov", "scintillator"]
+    energy: Kind | None = None
+    threshold: Annotated[ThresholdKeys, BeforeValidator(written_out)] | None = None
+    resolution: ResolutionKeys = ResolutionKeys()
+    birks: Birks | None = None
+    quenching: Annotated[QuenchingKeys, BeforeValidator(written_out)] | None = None
+    efficiency: Annotated[EfficiencyKeys, BeforeValidator(written_out)] | None = None
+    live_fraction: Fraction = 1.0
+
+    @property
+    def kind(self) -> str:
+        """The observed kind of energy: as given, or the medium's default."""
+        return self.energy or MEDIA[self.medium].kinds[0]
+
+    @classmethod
+    def cross_rules(cls, raw: Mapping[str, Any]) -> Problems:
+        """Check what a medium can report and what it has to be told."""
+        name = raw.get("medium")
+        medium = MEDIA.get(name) if isinstance(name, str) else None
+        if medium is None:
+            return
+        threshold = raw.get("threshold")
+        of = threshold.get("of") if isinstance(threshold, dict) else None
+        for path, kind in ((("energy",), raw.get("energy")), (("threshold", "of"), of)):
+            if kind is not None and kind not in medium.kinds:
+                yield path, f"a {name} reports {' or '.join(medium.kinds)} energy; found {kind!r}"
+        given = [key for key in ("birks", "quenching") if key in raw]
+        if not medium.quenches:
+            for key in given:
+                yield (key,), f"a {name} does not see slow protons, so there is nothing to quench"
+        elif len(given) != 1:
+            found = " and ".join(given) or "neither"
+            yield (
+                (),
+                "the light of recoil protons: give birks (hydrocarbons), or quenching = "
+                f'{{ file = … }}, or quenching = "none"; found {found}',
+            )
