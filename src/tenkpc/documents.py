@@ -130,9 +130,13 @@ class Document:
 
     def refused(self, problems: Iterable[tuple[Sequence[str | int], str]]) -> FileError:
         """Make an error of key paths and what is wrong at each."""
-        text = "" if self.changes else self.text
+        text, content = "" if self.changes else self.text, self.content()
         found = (
-            Problem(textfiles.line_of(text, path) if text else 0, textfiles.dotted(path), message)
+            Problem(
+                textfiles.line_of(text, path) if text else 0,
+                textfiles.dotted(path, content),
+                message,
+            )
             for path, message in problems
         )
         return FileError(self.origin, found)

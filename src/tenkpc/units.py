@@ -38,17 +38,17 @@ _AMBIGUOUS = {"ton", "tons"}
 _SHORT_TONS = re.compile(r"\b\w*(?<!metric_)(?<!long_)ton\b")
 # the words for dimensions that the messages use
 _DIMENSIONS = {
-    "[mass]": "a mass",
-    "[length]": "a length",
-    "[time]": "a time",
-    "1 / [time]": "a rate",
-    "[length] / [time]": "a speed",
-    "[length] ** 2 * [mass] / [time] ** 2": "an energy",
-    "[length] ** 2 * [mass] / [time] ** 3": "a luminosity",
-    "[mass] / [length] ** 3": "a density",
-    "[length] ** 2": "an area",
-    "[length] ** 3": "a volume",
-    "dimensionless": "a plain number",
+    frozenset({("[mass]", 1)}): "a mass",
+    frozenset({("[length]", 1)}): "a length",
+    frozenset({("[time]", 1)}): "a time",
+    frozenset({("[time]", -1)}): "a rate",
+    frozenset({("[length]", 1), ("[time]", -1)}): "a speed",
+    frozenset({("[length]", 2), ("[mass]", 1), ("[time]", -2)}): "an energy",
+    frozenset({("[length]", 2), ("[mass]", 1), ("[time]", -3)}): "a luminosity",
+    frozenset({("[mass]", 1), ("[length]", -3)}): "a density",
+    frozenset({("[length]", 2)}): "an area",
+    frozenset({("[length]", 3)}): "a volume",
+    frozenset(): "a plain number",
 }
 
 
@@ -191,5 +191,5 @@ def _wrong_dimension(value: Any, unit: str, argument: str, example: str, shown: 
 
 
 def _dimension(dimensionality: Any) -> str:
-    words = str(dimensionality)
-    return _DIMENSIONS.get(words, f"of dimension {words}")
+    known = _DIMENSIONS.get(frozenset(dimensionality.items()))
+    return known or f"of dimension {dimensionality}"

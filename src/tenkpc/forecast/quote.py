@@ -12,7 +12,7 @@ from tenkpc.rendering import number
 if TYPE_CHECKING:
     from tenkpc.forecast.forecast import Forecast
 
-# digits of the smallest error that are kept; the value gets as many decimals
+# digits of the largest error that are kept; the value and the other errors go as far
 ERROR_DIGITS = 2
 # interactions whose sources are named
 SOURCES_FOR = 3
@@ -20,30 +20,42 @@ SOURCES_FOR = 3
 
 def sentence(forecast: Forecast) -> str:
     """Say the result with everything that it depends on, rounded as its errors allow."""
-    chance = 0.5 * (forecast.chance.high - forecast.chance.low)
-    fall, rise = forecast.cross_section_error
-    detector = [0.5 * sum(budget.combined(budget.detector(forecast)))]
-    mixing = [0.5 * sum(budget.combined(budget.mixing(forecast)))]
-    errors = [error for error in (chance, fall, rise, *detector, *mixing) if error > 0]
-    place = _decimals(min(errors, default=1.0))
-    words_of = [f"± {_rounded(chance, place)} (chance)"]
-    words_of.append(f"+ {_rounded(rise, place)} − {_rounded(fall, place)} (cross sections)")
-    if detector[0] > 0:
-        words_of.append(f"± {_rounded(detector[0], place)} (detector)")
-    if mixing[0] > 0:
-        words_of.append(f"± {_rounded(mixing[0], place)} (mixing angles)")
+    errors = _errors(forecast)
+    place = _decimals(max(max(pair) for pair in errors.values()))
+    said = (_error(fall, rise, cause, place) for cause, (fall, rise) in errors.items())
+    count = " ".join(filter(None, (_rounded(forecast.total, place), *said)))
     return (
         f"{forecast.detector.title} ({words.filling(forecast)}) is expected to count "
-        f"{_rounded(forecast.total, place)} {' '.join(words_of)} events, "
-        f"{words.threshold(forecast)}, from the burst “{forecast.burst.title}” at "
+        f"{count} events {words.threshold(forecast)} from the burst “{forecast.burst.title}” at "
         f"{words.distance(forecast.distance_kpc)}{words.window_clause(forecast)} with "
         f"{forecast.conversion.describe()} (tenkpc {__version__}; {_sources(forecast)})."
     )
 
 
-def _decimals(smallest_error: float) -> int:
-    """Decimals that leave two digits of the smallest error; negative for tens and hundreds."""
-    return ERROR_DIGITS - 1 - math.floor(math.log10(smallest_error))
+def _errors(forecast: Forecast) -> dict[str, tuple[float, float]]:
+    """Fall and rise of the total by cause."""
+    chance = forecast.chance
+    return {
+        "chance": (forecast.total - chance.low, chance.high - forecast.total),
+        "cross sections": budget.combined(budget.cross_sections(forecast)),
+        "detector": budget.combined(budget.detector(forecast)),
+        "mixing angles": budget.combined(budget.mixing(forecast)),
+    }
+
+
+def _error(fall: float, rise: float, cause: str, decimals: int) -> str:
+    """Say an error, as one number where both sides round to the same; nothing where to zero."""
+    low, high = _rounded(fall, decimals), _rounded(rise, decimals)
+    if not round(fall, decimals) and not round(rise, decimals):
+        return ""
+    return f"± {low} ({cause})" if low == high else f"+ {high} − {low} ({cause})"
+
+
+def _decimals(largest_error: float) -> int:
+    """Decimals that leave two digits of the largest error; negative for tens and hundreds."""
+    if largest_error <= 0:
+        return 0
+    return ERROR_DIGITS - 1 - math.floor(math.log10(largest_error))
 
 
 def _rounded(value: float, decimals: int) -> str:

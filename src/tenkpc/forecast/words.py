@@ -65,10 +65,9 @@ def threshold(forecast: Forecast) -> str:
     """Say above which energy, and of which kind, an event must be observed."""
     response = forecast.detector.response
     lowest = max(response.threshold_mev, forecast.energy_above_mev or 0.0)
-    kind = f"{response.kind} energy"
     if lowest <= 0:
-        return f"observed at any {kind}"
-    return f"observed {kind} of at least {lowest:.4g} MeV"
+        return f"observed at any {response.kind} energy"
+    return f"observed above {lowest:.4g} MeV of {response.kind} energy"
 
 
 def mass(mass_kg: float) -> str:

@@ -7,14 +7,20 @@ from collections.abc import Iterator
 
 from tenkpc.rendering import GROUPS, Block, Facts, Page, Paragraph, Row, Rule, Table
 
-# what LaTeX has a command for; letters with a bar come before the letters
+# what LaTeX has a command for; the longest come first
 _LATEX = (
+    ("ν̄e", r"$\bar{\nu}_e$"),
+    ("ν̄x", r"$\bar{\nu}_x$"),
+    ("νe", r"$\nu_e$"),
+    ("νx", r"$\nu_x$"),
+    ("ν̄", r"$\bar{\nu}$"),
     ("\\", r"\textbackslash{}"),
     *((char, f"\\{char}") for char in "&%$#_{}"),
     ("~", r"\textasciitilde{}"),
     ("^", r"\textasciicircum{}"),
     (GROUPS, r"\,"),
-    ("ν̄", r"$\bar{\nu}$"),
+    ("<", "$<$"),
+    (">", "$>$"),
     ("σ", r"$\sigma$"),
     ("ν", r"$\nu$"),
     ("γ", r"$\gamma$"),
@@ -31,6 +37,8 @@ _LATEX = (
     ("”", "''"),
     ("·", r"$\cdot$"),
 )
+_TABLE = dict(_LATEX)
+_WRITTEN = re.compile("|".join(map(re.escape, _TABLE)))
 _RAISED = {
     **dict(zip("⁰¹²³⁴⁵⁶⁷⁸⁹", "0123456789", strict=True)),
     "⁺": "+",
@@ -110,9 +118,7 @@ def _tabular_row(row: Row) -> str:
 
 def tex(words: str) -> str:
     """Write a text so that LaTeX prints it: escapes, Greek, arrows, raised digits and signs."""
-    parts = re.split(r"(ν̄|.)", words)
-    table = dict(_LATEX)
-    written = "".join(table.get(part, part) for part in parts)
+    written = _WRITTEN.sub(lambda m: _TABLE[m[0]], words)
     return _SUPERSCRIPTS.sub(
         lambda m: f"\\textsuperscript{{{''.join(_RAISED[c] for c in m[0])}}}", written
     )
