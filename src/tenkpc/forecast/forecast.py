@@ -7,7 +7,7 @@ from functools import cached_property
 from typing import TYPE_CHECKING, Any
 
 import numpy as np
-from numpy.typing import NDArray
+from numpy.typing import ArrayLike, NDArray
 
 from tenkpc import rendering
 from tenkpc.detector.detector import Detector
@@ -30,7 +30,7 @@ from tenkpc.forecast.bursts import BurstRange
 from tenkpc.forecast.fold import fold
 from tenkpc.forecast.grid import EnergyGrid
 from tenkpc.forecast.uncertainty import Interval, poisson_interval, predictive_interval
-from tenkpc.propagation.conversion import Adiabatic, Conversion
+from tenkpc.propagation.conversion import Adiabatic, Conversion, Unconverted
 from tenkpc.rendering import markup
 from tenkpc.source.burst import Burst
 
@@ -265,7 +265,11 @@ class Forecast:
         return frames.breakdown(self.rows, self.row_values)
 
     def spectrum(
-        self, *, of: str = "observed", bins: Quantity | Sequence[Quantity] | None = None
+        self,
+        *,
+        of: str = "observed",
+        bins: Quantity | Sequence[Quantity] | None = None,
+        by: str = "interaction",
     ) -> DataFrame:
         """Counted events by bin of energy, one column per interaction.
 
@@ -276,6 +280,8 @@ class Forecast:
             neutrino energy of the counted events.
         bins
             width of the bins, or their edges; 2 MeV up to 100 MeV unless given.
+        by
+            what the columns are: ``"interaction"``, or ``"seen"`` for what the detector sees.
 
         Returns
         -------
@@ -292,18 +298,41 @@ class Forecast:
         else:
             message = f"of: expected 'observed' or 'neutrino', found {of!r}"
             raise InputError(message)
-        values = self._by_key(fold(self._fluence, self._compiled.species, tensor)[:, 0])
+        names, owner = self._columns_by(by)
+        folded = fold(self._fluence, self._compiled.species, tensor)[:, 0]
+        values = _summed(folded, owner, len(names))
         kind = self.detector.response.kind if of == "observed" else of
         noise = self._background_spectrum(np.array(edges)) if of == "observed" else None
-        return frames.spectrum(self.keys, values, np.array(edges), kind, noise)
+        return frames.spectrum(names, values, np.array(edges), kind, noise)
 
-    def light_curve(self, bins: Quantity | Sequence[Quantity]) -> DataFrame:
+    def fluence(self, energy_mev: ArrayLike, *, converted: bool = True) -> Floats:
+        """Fluence of ONE kind of each species at the detector, (4, energies), cm⁻² MeV⁻¹.
+
+        Parameters
+        ----------
+        energy_mev
+            neutrino energies in MeV.
+        converted
+            after flavour conversion; otherwise as emitted, over the same sphere.
+        """
+        energy = np.atleast_1d(np.asarray(energy_mev, dtype=float))
+        spectra, times = flux.emission(self.burst, energy, self.span_s)
+        case: Conversion = self.conversion if converted else Unconverted()
+        arriving = flux.at_detector(spectra, case, self.distance_kpc, energy, times)
+        total: Floats = arriving.sum(axis=1)
+        return total
+
+    def light_curve(
+        self, bins: Quantity | Sequence[Quantity], *, by: str = "interaction"
+    ) -> DataFrame:
         """Counted events by bin of time after bounce, one column per interaction.
 
         Parameters
         ----------
         bins
             width of the bins, ``"20 ms"``, or their edges.
+        by
+            what the columns are: ``"interaction"``, or ``"seen"`` for what the detector sees.
 
         Returns
         -------
@@ -313,14 +342,15 @@ class Forecast:
         """
         self._needs_time("light_curve")
         edges = arguments.time_edges_s(bins, self.span_s)
-        values = np.zeros((len(edges) - 1, len(self.keys)))
+        names, owner = self._columns_by(by)
+        values = np.zeros((len(edges) - 1, len(names)))
         for times, weights, places in flux.binned_time_nodes(self.burst, edges, self.span_s):
             emitted = self.burst.rate(times, self._grid.nodes_mev) * weights[:, None]
             arriving = self._at_detector(emitted, times)
             counted = fold(arriving, self._compiled.species, self._compiled.counted)[:, :, 0]
-            np.add.at(values, places, self._by_key(counted).T)
+            np.add.at(values, places, _summed(counted, owner, len(names)).T)
         noise = self._background_hz().sum() if self.detector.backgrounds else None
-        return frames.light_curve(self.keys, values.T, edges, noise)
+        return frames.light_curve(names, values.T, edges, noise)
 
     def versus_distance(self, nearest: Quantity, farthest: Quantity) -> DataFrame:
         """Counted events by interaction at distances between two, evenly spaced in ratio."""
@@ -387,7 +417,7 @@ class Forecast:
     @cached_property
     def by_interaction(self) -> Floats:
         """Events by interaction and column of the compiled tensor."""
-        return self._by_key(self.row_values)
+        return _summed(self.row_values, self._columns_by("interaction")[1], len(self.keys))
 
     @property
     def rows(self) -> tuple[columns.Row, ...]:
@@ -399,12 +429,15 @@ class Forecast:
         """Events by row and column of the compiled tensor."""
         return fold(self._fluence, self._compiled.species, self._compiled.tensor)[:, 0]
 
-    def _by_key(self, values: Floats) -> Floats:
-        """Add up the rows of each interaction: (rows, ...) -> (interactions, ...)."""
-        owner = [self.keys.index(row.interaction) for row in self.rows]
-        summed = np.zeros((len(self.keys), *values.shape[1:]))
-        np.add.at(summed, owner, values)
-        return summed
+    def _columns_by(self, by: str) -> tuple[tuple[str, ...], list[int]]:
+        """Names of the columns of a table, and which of them each row belongs to."""
+        if by not in ("interaction", "seen"):
+            message = f"by: expected 'interaction' or 'seen', found {by!r}"
+            raise InputError(message)
+        mine = [row.interaction if by == "interaction" else row.seen_as for row in self.rows]
+        names = tuple(sorted(set(filter(None, mine))))
+        # rows that are not seen count nothing, so they may stand anywhere
+        return names, [names.index(name) if name else 0 for name in mine]
 
     @cached_property
     def _grid(self) -> EnergyGrid:
@@ -457,3 +490,10 @@ class Forecast:
             title = self.burst.title
             message = f"{what}: {title!r} is integrated over time and has no time profile"
             raise InputError(message)
+
+
+def _summed(values: Floats, owner: Sequence[int], count: int) -> Floats:
+    """Add up the rows that belong together: (rows, ...) -> (columns, ...)."""
+    summed = np.zeros((max(count, 1), *values.shape[1:]))
+    np.add.at(summed, list(owner), values)
+    return summed[:count]

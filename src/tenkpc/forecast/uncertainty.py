@@ -6,7 +6,11 @@ import math
 from collections.abc import Callable, Iterable
 from dataclasses import dataclass
 
-from scipy.special import betainc, ndtri, pdtr
+import numpy as np
+from numpy.typing import ArrayLike, NDArray
+from scipy.special import betainc, gammainccinv, gammaincinv, ndtri, pdtr
+
+Floats = NDArray[np.float64]
 
 ONE_SIGMA = 0.6826894921370859  # probability within 1σ of a normal distribution
 # above this mean a whole number is a smaller step than double precision resolves in pdtr
@@ -68,6 +72,18 @@ def predictive_interval(
 
     width = math.hypot(math.sqrt(mean), mean * relative_error)
     return _interval(cumulative, mean, width, probability)
+
+
+def garwood_interval(observed: ArrayLike, probability: float = ONE_SIGMA) -> tuple[Floats, Floats]:
+    """Central interval for the mean of a Poisson distribution of which a count was observed.
+
+    F. Garwood, Biometrika 28 (1936) 437. For counts that were seen or drawn, never for
+    expectations.
+    """
+    tail = 0.5 * (1 - probability)
+    count = np.asarray(observed, dtype=float)
+    low = np.where(count > 0, gammaincinv(np.maximum(count, 1), tail), 0.0)
+    return low, np.asarray(gammainccinv(count + 1, tail))
 
 
 def _interval(

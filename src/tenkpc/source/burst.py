@@ -41,6 +41,8 @@ class Burst:
         time after bounce that the burst covers, s.
     components
         its parts, whose emission adds.
+    names
+        what the file calls them, in the same order.
     notes
         sentences about what was set without being written.
     document
@@ -52,6 +54,7 @@ class Burst:
     start_s: float
     end_s: float
     components: tuple[Flowing | Integrated, ...]
+    names: tuple[str, ...] = ()
     notes: tuple[str, ...] = field(compare=False, default=())
     document: Document = field(compare=False, default=Document(""), repr=False)
 
@@ -84,6 +87,7 @@ class Burst:
             start_s=keys.start,
             end_s=keys.end,
             components=tuple(assembly.component(table) for table in keys.component),
+            names=tuple(table.name for table in keys.component),
             notes=tuple(assembly.notes(keys)),
             document=document.with_tables(keys),
         )
@@ -229,6 +233,14 @@ class Burst:
         np.divide(energy, number, out=mean, where=number > 0)
         return mean
 
+    def energy_width(self, time_s: ArrayLike) -> Floats:
+        """Standard deviation √(⟨E²⟩ − ⟨E⟩²) of the spectrum in MeV, (4, times); NaN as above."""
+        number, square = self._moment(0, time_s), self._moment(2, time_s)
+        mean = self.mean_energy(time_s)
+        spread: Floats = np.full(number.shape, np.nan)
+        np.divide(square, number, out=spread, where=number > 0)
+        return np.sqrt(spread - mean**2)
+
     def time_panels(self) -> Floats:
         """Edges of time panels from start to end, for 8 Gauss-Legendre points each."""
         return self._panels
@@ -264,6 +276,12 @@ class Burst:
         parts = [part.moment(order, times) for part in self._flowing()]
         total: Floats = np.sum(parts, axis=0) * self._covers(times)
         return total
+
+    @property
+    def flowing(self) -> dict[str, Flowing]:
+        """Components with a time profile by their name in the file."""
+        pairs = zip(self.names, self.components, strict=False)
+        return {name: part for name, part in pairs if not isinstance(part, Integrated)}
 
     def _flowing(self) -> list[Flowing]:
         parts = [part for part in self.components if not isinstance(part, Integrated)]
