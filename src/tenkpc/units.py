@@ -34,6 +34,10 @@ _METRIC = {
     "megatons": "megatonne",
 }
 _AMBIGUOUS = {"ton", "tons"}
+# a number, then its unit: what most texts are
+_PLAIN = re.compile(
+    r"(?P<number>[+-]?(?:\d+\.?\d*|\.\d+)(?:[eE][+-]?\d+)?)\s*(?P<unit>[A-Za-zµ/].*)"
+)
 # pint's names of US tons end like this; those of metric and long tons are told apart before it
 _SHORT_TONS = re.compile(r"\b\w*(?<!metric_)(?<!long_)ton\b")
 # the words for dimensions that the messages use
@@ -78,6 +82,14 @@ def to_float(value: object, unit: str, argument: str, example: str) -> float:
         where the unit is missing, unknown or of another dimension, or the number not finite.
     """
     if isinstance(value, str):
+        plain = _PLAIN.fullmatch(value.strip())
+        factor = _factor(plain["unit"], unit) if plain else None
+        if (
+            plain
+            and factor is not None
+            and math.isfinite(number := float(plain["number"]) * factor)
+        ):
+            return number
         quantity = _read(value, unit, argument, example)
     elif hasattr(value, "magnitude") and hasattr(value, "units"):
         quantity = _foreign(value, unit, argument, example)
@@ -86,6 +98,21 @@ def to_float(value: object, unit: str, argument: str, example: str) -> float:
         message = f"{argument}: expected a value with its unit, {_quote(example)}; {found}"
         raise UnitError(message)
     return _converted(quantity, unit, argument, example, shown=str(value))
+
+
+@lru_cache(maxsize=256)
+def _factor(words: str, unit: str) -> float | None:
+    """What one of a unit is in another; None where only the whole text tells, or is wrong.
+
+    Files hold the same few units over and over, and pint takes a millisecond for each text.
+    """
+    try:
+        one, two = (to_float(registry().Quantity(f"{n} {words}"), unit, "", "") for n in (1, 2))
+        metric = _is_mass(unit)
+    except Exception:  # whatever it is, reading the whole text says it with its argument
+        return None
+    # masses have rules of their own, and some units have an offset
+    return one if not metric and two == 2 * one else None
 
 
 def to_fraction(value: object, argument: str) -> float:

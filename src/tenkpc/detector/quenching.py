@@ -13,11 +13,11 @@ from dataclasses import dataclass
 from typing import Protocol
 
 import numpy as np
-from numpy.polynomial.legendre import leggauss
 from numpy.polynomial.polynomial import polyval
 from numpy.typing import NDArray
 
 from tenkpc.constants import PROTON_MASS_MEV
+from tenkpc.quadrature import gauss
 
 Floats = NDArray[np.float64]
 
@@ -114,11 +114,11 @@ def quenched_protons(
     """
     knots = np.geomspace(LOWEST_MEV, HIGHEST_MEV, KNOTS)
     knots = np.unique(np.concatenate([[0.0], knots, BRANCHES_MEV]))
-    x, w = leggauss(4)
+    x, w = gauss(4)
     low, width = knots[:-1, None], np.diff(knots)[:, None]
-    kinetic = low + 0.5 * width * (1 + x)
+    kinetic = low + width * x
     stopping = stopping_mev_cm2_g(kinetic, atoms_per_gram, coefficients)
-    steps = (0.5 * width * w * birks(stopping, kinetic, constant_g_cm2_mev)).sum(axis=1)
+    steps = (width * w * birks(stopping, kinetic, constant_g_cm2_mev)).sum(axis=1)
     visible = np.concatenate([[0.0], np.cumsum(steps)])
     return Quenched(tuple(knots.tolist()), tuple(visible.tolist()))
 

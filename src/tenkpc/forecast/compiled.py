@@ -25,9 +25,9 @@ from tenkpc.forecast.deposits import (
     OUTSIDE,
     cell_edges,
     columns,
-    deposit_weights,
     parts,
     total_weights,
+    weighted,
 )
 from tenkpc.forecast.grid import EnergyGrid
 from tenkpc.interactions.base import HIGHEST_ENERGY_MEV, FinalState, Fixed, Interaction
@@ -161,14 +161,18 @@ def compile_rows(exposures: Sequence[Exposure], grid: EnergyGrid, edges_mev: Flo
     """
     rows, blocks = [], []
     cells = _CellsOf(exposures, edges_mev)
+    # neutrino kinds that react alike share their final states, so each is compiled once
+    known: dict[tuple[int, int], Floats] = {}
     for exposure, species, state in _states(exposures):
         start = _offset(exposure.response, state)
         seen_as = "" if start is None else state.seen_as
         reaction = exposure.interaction.key
         rows.append(Row(exposure.volume, reaction, state.label, species, seen_as))
-        made = cells(exposure.response, state)
-        block = _block(state, exposure.response, grid, made, edges_mev, start)
-        blocks.append(block * exposure.targets)
+        key = id(state), id(exposure.response)
+        if key not in known:
+            made = cells(exposure.response, state)
+            known[key] = _block(state, exposure.response, grid, made, edges_mev, start)
+        blocks.append(known[key] * exposure.targets)
     species_index = np.array([SPECIES.index(row.species) for row in rows], dtype=np.intp)
     empty = np.zeros((0, grid.count, FIRST_BIN + len(edges_mev)))
     tensor = np.stack(blocks) if blocks else empty
@@ -240,15 +244,19 @@ def _block(
     if start is None:
         return block
     shares, kinetic = _observed(state, response, cells, edges_mev, start)
-    weights = deposit_weights(state, grid, kinetic)
-    counted = shares.bins.sum(axis=1)
-    block[:, ABOVE_THRESHOLD] = weights[CENTRAL] @ shares.above
-    block[:, COUNTED_LOW] = weights[LOW] @ counted
-    block[:, COUNTED_HIGH] = weights[HIGH] @ counted
-    block[:, COUNTED_OUTSIDE] = weights[OUTSIDE] @ counted
-    block[:, SCALE_LOW] = weights[CENTRAL] @ shares.scale_low
-    block[:, SCALE_HIGH] = weights[CENTRAL] @ shares.scale_high
-    block[:, FIRST_BIN:] = weights[CENTRAL] @ shares.bins
+    counted = shares.bins.sum(axis=1, keepdims=True)
+    also = np.stack([shares.above, shares.scale_low, shares.scale_high], axis=1)
+    wanted = {
+        CENTRAL: np.concatenate([also, shares.bins], axis=1),
+        LOW: counted,
+        HIGH: counted,
+        OUTSIDE: counted,
+    }
+    sums = weighted(state, grid, kinetic, wanted)
+    block[:, [ABOVE_THRESHOLD, SCALE_LOW, SCALE_HIGH]] = sums[CENTRAL][:, :3]
+    block[:, FIRST_BIN:] = sums[CENTRAL][:, 3:]
+    for column, variant in ((COUNTED_LOW, LOW), (COUNTED_HIGH, HIGH), (COUNTED_OUTSIDE, OUTSIDE)):
+        block[:, column] = sums[variant][:, 0]
     return block
 
 

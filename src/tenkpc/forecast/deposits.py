@@ -13,15 +13,16 @@ cell, a line over E alone.
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Iterator
+from collections.abc import Iterable, Iterator, Mapping
 from dataclasses import dataclass
 from itertools import pairwise
 
 import numpy as np
 from numpy.typing import NDArray
 
-from tenkpc.forecast.grid import NODES_PER_PANEL, EnergyGrid, gauss
+from tenkpc.forecast.grid import NODES_PER_PANEL, EnergyGrid
 from tenkpc.interactions.base import HIGHEST_ENERGY_MEV, FinalState, Fixed, Shifted, Spread
+from tenkpc.quadrature import gauss
 
 Floats = NDArray[np.float64]
 
@@ -85,8 +86,13 @@ def total_weights(state: FinalState, grid: EnergyGrid) -> Floats:
     return weights
 
 
-def deposit_weights(state: FinalState, grid: EnergyGrid, kinetic_edges_mev: Floats) -> Floats:
-    """W of the module's docstring with its variants, (variants, nodes, cells), cm² MeV.
+def weighted(
+    state: FinalState,
+    grid: EnergyGrid,
+    kinetic_edges_mev: Floats,
+    shares: Mapping[int, Floats],
+) -> dict[int, Floats]:
+    """Σ_cells W[node, cell] × share[cell, column], the module's W times what is made of a cell.
 
     Parameters
     ----------
@@ -96,14 +102,22 @@ def deposit_weights(state: FinalState, grid: EnergyGrid, kinetic_edges_mev: Floa
         the grid of the flux.
     kinetic_edges_mev
         edges of the cells as kinetic energies of the lead particle, MeV, ascending.
+    shares
+        for some variants of the cross section, shares of shape (cells, columns).
+
+    Returns
+    -------
+    dict
+        for each variant, (nodes, columns), cm² MeV.
     """
-    count = 1 if isinstance(state.deposit, Fixed) else len(kinetic_edges_mev) - 1
-    weights = np.zeros((count, 4, grid.count))
+    sums = {v: np.zeros((grid.count, share.shape[1])) for v, share in shares.items()}
     for part in parts(state, grid, kinetic_edges_mev):
         first = np.flatnonzero(np.diff(part.cells, prepend=-1))
-        sums = np.add.reduceat(part.weights, first, axis=0)
-        weights[part.cells[first], :, columns(part.panel)] += sums
-    return np.moveaxis(weights, 0, 2)
+        cells = part.cells[first]
+        weights = np.add.reduceat(part.weights, first, axis=0)
+        for variant, share in shares.items():
+            sums[variant][columns(part.panel)] += weights[:, variant].T @ share[cells]
+    return sums
 
 
 def parts(

@@ -10,8 +10,9 @@ from numpy.typing import NDArray
 
 from tenkpc.constants import CM_PER_KPC
 from tenkpc.forecast.fold import BLOCK
-from tenkpc.forecast.grid import gauss, panel_nodes
+from tenkpc.forecast.grid import panel_nodes
 from tenkpc.propagation.conversion import Conversion
+from tenkpc.quadrature import gauss
 from tenkpc.source.burst import Burst
 
 Floats = NDArray[np.float64]

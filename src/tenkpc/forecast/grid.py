@@ -16,18 +16,12 @@ from numpy.polynomial.legendre import leggauss, legvander
 from numpy.typing import NDArray
 
 from tenkpc.interactions.base import HIGHEST_ENERGY_MEV
+from tenkpc.quadrature import gauss
 
 Floats = NDArray[np.float64]
 
 PANELS_MEV = (0.0, 2.0, 5.0, 10.0, 16.0, 24.0, 36.0, 60.0, 100.0, HIGHEST_ENERGY_MEV)
 NODES_PER_PANEL = 12
-
-
-@lru_cache(maxsize=8)
-def gauss(order: int) -> tuple[Floats, Floats]:
-    """Nodes and weights of Gauss-Legendre quadrature on [0, 1]."""
-    x, w = leggauss(order)
-    return 0.5 * (x + 1.0), 0.5 * w
 
 
 @dataclass(frozen=True)

@@ -16,7 +16,6 @@ from dataclasses import dataclass, replace
 from functools import partial
 
 import numpy as np
-from numpy.polynomial.legendre import leggauss
 from numpy.typing import ArrayLike, NDArray
 
 from tenkpc.constants import (
@@ -35,6 +34,7 @@ from tenkpc.interactions.base import (
     piecewise,
 )
 from tenkpc.interactions.transition import Transition, over_angle
+from tenkpc.quadrature import gauss
 from tenkpc.species import SPECIES
 
 Floats = NDArray[np.float64]
@@ -149,13 +149,14 @@ def to_boron(inputs: CarbonInputs) -> Interaction:
 
 def excited(inputs: CarbonInputs) -> Interaction:
     """ν + ¹²C → ν + ¹²C*(15.11 MeV) of every species, and the ways the level decays."""
+    plain, anti = (_decays(sign, inputs) for sign in (1.0, -1.0))
     return Interaction(
         key="carbon-12-excited",
         equation="ν + ¹²C → ν + ¹²C*",
         target=ISOTOPE,
         threshold_mev=inputs.level_mev,
         references=(STRENGTH, MAGNETISM),
-        branches={species: _decays(species, inputs) for species in SPECIES},
+        branches={s: anti if s.startswith("anti_") else plain for s in SPECIES},
     )
 
 
@@ -179,14 +180,17 @@ def charged_transition(inputs: CarbonInputs, daughter: str) -> Transition:
     )
 
 
-def neutral_transition(inputs: CarbonInputs, species: str) -> Transition:
-    """Transition to the 15.11 MeV level of ¹²C: half the mean strength of the charged ones."""
+def neutral_transition(inputs: CarbonInputs, sign: float) -> Transition:
+    """Transition to the 15.11 MeV level of ¹²C: half the mean strength of the charged ones.
+
+    ``sign`` is 1 for neutrinos and −1 for antineutrinos.
+    """
     moment = inputs.effective_moment / inputs.axial_coupling * (1 - 2 * inputs.sin2_theta_w)
     return Transition(
         coupling_per_mev2=FERMI_CONSTANT_PER_MEV2,
         strength=0.5 * sum(inputs.strength.values()) / len(inputs.strength),
         energy_mev=inputs.level_mev,
-        moment_over_axial=-moment if species.startswith("anti_") else moment,
+        moment_over_axial=sign * moment,
         oscillator_fm=inputs.oscillator_fm,
         charge=0,
         nucleons=12,
@@ -208,9 +212,8 @@ def excited_cm2(neutrino_mev: ArrayLike, level: Transition, asymmetry: float) ->
 
 def stopped_muon_average(sigma_cm2: OfEnergy) -> float:
     """Average over νe of positive muons that decay at rest: 12 x² (1 − x), x = 2E/m_μ."""
-    t, w = leggauss(96)
-    x = 0.5 * (1 + t)
-    average: float = np.sum(0.5 * w * 12 * x**2 * (1 - x) * sigma_cm2(x * MUON_MASS_MEV / 2))
+    x, w = gauss(96)
+    average: float = np.sum(w * 12 * x**2 * (1 - x) * sigma_cm2(x * MUON_MASS_MEV / 2))
     return float(average)
 
 
@@ -268,7 +271,7 @@ def _excited_factor(inputs: CarbonInputs) -> float:
     return inputs.excited_average_cm2 / stopped_muon_average(shape)
 
 
-def _decays(species: str, inputs: CarbonInputs) -> tuple[FinalState, ...]:
+def _decays(sign: float, inputs: CarbonInputs) -> tuple[FinalState, ...]:
     """The level's decays: one gamma, two, or three alphas, each its share of the whole."""
     first, second = inputs.gamma_cascade_mev
     ways = (
@@ -277,7 +280,7 @@ def _decays(species: str, inputs: CarbonInputs) -> tuple[FinalState, ...]:
         ("alphas", "three alphas", "alpha", inputs.alphas_mev, ()),
     )
     whole = partial(
-        _held, sigma=neutral_transition(inputs, species).total_cm2, end_mev=GROUND_STATE_END_MEV
+        _held, sigma=neutral_transition(inputs, sign).total_cm2, end_mev=GROUND_STATE_END_MEV
     )
     return tuple(
         FinalState(

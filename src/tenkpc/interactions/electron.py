@@ -13,7 +13,6 @@ from dataclasses import dataclass
 from functools import lru_cache, partial
 
 import numpy as np
-from numpy.polynomial.legendre import leggauss
 from numpy.typing import ArrayLike, NDArray
 
 from tenkpc.constants import ALPHA, FERMI_CONSTANT_PER_MEV2, HBAR_C_MEV_CM
@@ -21,6 +20,7 @@ from tenkpc.constants import ELECTRON_MASS_MEV as M
 from tenkpc.interactions import recoil
 from tenkpc.interactions.base import FinalState, Interaction, Reference, Spread
 from tenkpc.interactions.electron_radiative import RHO, corrections, kappa_electron, kappa_other
+from tenkpc.quadrature import gauss
 
 Floats = NDArray[np.float64]
 
@@ -161,9 +161,8 @@ def _integral(
 @lru_cache(maxsize=1)
 def _recoil_nodes() -> tuple[Floats, Floats]:
     """Nodes and weights on [0, 1] under u = t³(10 - 15t + 6t²), flat at both ends."""
-    x, w = leggauss(NODES)
-    t = 0.5 * (1 + x)
-    return t**3 * (10 - 15 * t + 6 * t * t), 0.5 * w * 30 * t**2 * (1 - t) ** 2
+    t, w = gauss(NODES)
+    return t**3 * (10 - 15 * t + 6 * t * t), w * 30 * t**2 * (1 - t) ** 2
 
 
 def _constant(neutrino_mev: Floats, value: float) -> Floats:

@@ -5,7 +5,6 @@ from __future__ import annotations
 from functools import partial
 
 import numpy as np
-from numpy.polynomial.legendre import leggauss
 from numpy.typing import ArrayLike, NDArray
 
 from tenkpc.constants import ELECTRON_MASS_MEV
@@ -18,6 +17,7 @@ from tenkpc.interactions.inverse_beta_kernel import (
     per_positron_energy,
     positron_bounds_mev,
 )
+from tenkpc.quadrature import gauss
 
 Floats = NDArray[np.float64]
 
@@ -107,11 +107,12 @@ def relative_error(neutrino_mev: ArrayLike) -> Floats:
 
 def _over_positron(neutrino_mev: Floats, inputs: InverseBetaInputs) -> tuple[Floats, Floats]:
     """Positron energies on a last axis and dσ/dE_e there times the weights of quadrature."""
-    x, w = leggauss(NODES)
+    x, w = gauss(NODES)
     low, high = positron_bounds_mev(neutrino_mev[..., None])
-    half = 0.5 * (high - low)
-    positron = low + half * (1 + x)
-    return positron, half * w * per_positron_energy(neutrino_mev[..., None], positron, inputs)
+    positron = low + (high - low) * x
+    return positron, (high - low) * w * per_positron_energy(
+        neutrino_mev[..., None], positron, inputs
+    )
 
 
 def _per_kinetic_energy(

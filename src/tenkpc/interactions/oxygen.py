@@ -122,7 +122,7 @@ def excited(inputs: OxygenInputs) -> Interaction:
         target=ISOTOPE,
         threshold_mev=inputs.gamma_threshold_mev,
         references=GAMMAS,
-        branches={species: _lines(inputs) for species in SPECIES},
+        branches=dict.fromkeys(SPECIES, _lines(inputs)),
     )
 
 

@@ -21,7 +21,6 @@ from dataclasses import dataclass
 from functools import partial
 
 import numpy as np
-from numpy.polynomial.legendre import leggauss
 from numpy.typing import ArrayLike, NDArray
 
 from tenkpc.constants import (
@@ -33,6 +32,7 @@ from tenkpc.constants import (
 from tenkpc.constants import PROTON_MASS_MEV as M
 from tenkpc.interactions import recoil
 from tenkpc.interactions.base import FinalState, Interaction, Reference, Spread
+from tenkpc.quadrature import gauss
 from tenkpc.species import SPECIES
 
 Floats = NDArray[np.float64]
@@ -87,18 +87,18 @@ class ProtonInputs:
 
 def proton_scattering(inputs: ProtonInputs) -> Interaction:
     """Build elastic scattering on free protons; the same for all flavours."""
+    plain, anti = (_state(sign, inputs) for sign in (1.0, -1.0))
     return Interaction(
         key="proton-scattering",
         equation="ν + p → ν + p",
         target="H-1",
         threshold_mev=0.0,
         references=REFERENCES,
-        branches={species: (_state(species, inputs),) for species in SPECIES},
+        branches={s: (anti if s.startswith("anti_") else plain,) for s in SPECIES},
     )
 
 
-def _state(species: str, inputs: ProtonInputs) -> FinalState:
-    sign = -1.0 if species.startswith("anti_") else 1.0
+def _state(sign: float, inputs: ProtonInputs) -> FinalState:
     return FinalState(
         label="recoil proton",
         sigma_cm2=partial(total_cm2, sign=sign, inputs=inputs),
@@ -154,7 +154,7 @@ def total_cm2(neutrino_mev: ArrayLike, sign: float, inputs: ProtonInputs) -> Flo
     """
     energy = np.minimum(np.asarray(neutrino_mev, dtype=float), HIGHEST_MEV)
     positive = np.where(energy > 0, energy, 1.0)[..., None]
-    x, w = leggauss(NODES)
-    half = 0.5 * recoil.highest_recoil_mev(positive, M)
-    values = per_recoil_energy(positive, half * (1 + x), sign, inputs)
-    return np.where(energy > 0, (values * half * w).sum(axis=-1), 0.0)
+    x, w = gauss(NODES)
+    highest = recoil.highest_recoil_mev(positive, M)
+    values = per_recoil_energy(positive, highest * x, sign, inputs)
+    return np.where(energy > 0, (values * highest * w).sum(axis=-1), 0.0)

@@ -20,11 +20,11 @@ from collections.abc import Callable
 from dataclasses import dataclass
 
 import numpy as np
-from numpy.polynomial.legendre import leggauss
 from numpy.typing import ArrayLike, NDArray
 
 from tenkpc.constants import ELECTRON_MASS_MEV, HBAR_C_MEV_CM, NEUTRON_MASS_MEV, PROTON_MASS_MEV
 from tenkpc.interactions.coulomb import fermi_function
+from tenkpc.quadrature import gauss
 
 Floats = NDArray[np.float64]
 
@@ -119,10 +119,10 @@ def over_angle(
     transition: Transition, neutrino_mev: Floats, weight: Callable[[Floats, Floats], Floats]
 ) -> Floats:
     """∫ dc weight(c, q) over all angles, q the momentum transfer in MeV."""
-    x, w = leggauss(NODES)
-    c = 1 - 0.5 * (1 + x) ** 2  # crowded towards c = 1, where q² may be small
+    t, w = gauss(NODES)
+    c = 1 - 2 * t**2  # crowded towards c = 1, where q² may be small
     energy = np.maximum(neutrino_mev, transition.energy_mev)[..., None]
     p = transition.momentum_mev(energy)
     q = np.sqrt(energy**2 + p**2 - 2 * energy * p * c)
-    integral: Floats = (w * (1 + x) * weight(c, q)).sum(axis=-1)
+    integral: Floats = (4 * w * t * weight(c, q)).sum(axis=-1)
     return integral

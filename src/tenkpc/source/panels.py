@@ -5,8 +5,9 @@ from __future__ import annotations
 from collections.abc import Callable, Iterable
 
 import numpy as np
-from numpy.polynomial.legendre import leggauss
 from numpy.typing import NDArray
+
+from tenkpc.quadrature import gauss
 
 Floats = NDArray[np.float64]
 OfTime = Callable[[Floats], Floats]
@@ -51,9 +52,9 @@ def time_panels(start_s: float, end_s: float, joints_s: Iterable[float], probe: 
 
 def panel_integrals(function: OfTime, edges_s: Floats) -> Floats:
     """Integrals of functions of time, (functions, times) → (functions, panels)."""
-    x, w = leggauss(ORDER)
+    x, w = gauss(ORDER)
     low, width = edges_s[:-1, None], np.diff(edges_s)[:, None]
-    times = (low + 0.5 * width * (x + 1)).ravel()
+    times = (low + width * x).ravel()
     values = function(times).reshape(-1, len(edges_s) - 1, ORDER)
-    integrals: Floats = np.sum(0.5 * width * w * values, axis=-1)
+    integrals: Floats = np.sum(width * w * values, axis=-1)
     return integrals

@@ -9,11 +9,11 @@ from __future__ import annotations
 from functools import lru_cache
 
 import numpy as np
-from numpy.polynomial.legendre import leggauss
 from numpy.typing import ArrayLike, NDArray
 from scipy.special import expit, gammainc, gammaincc, gammaln, xlogy
 
 from tenkpc.errors import InputError
+from tenkpc.quadrature import gauss
 
 Floats = NDArray[np.float64]
 
@@ -119,7 +119,7 @@ def fermi_integral(order: float, degeneracy: ArrayLike) -> Floats:
         message = "the Fermi integral is computed for orders from 1 and any finite degeneracy"
         raise InputError(message)
     base = np.maximum(eta - 40.0, 0.0)
-    s, w = _unit_nodes()
+    s, w = gauss(20)
     filled = base * _power_sum(base * s**4, order, 4 * s**3 * w)[..., None]
     x, weights = _wide_nodes()
     edge = _power_sum(base + x, order, weights * expit(eta - base - x))
@@ -212,14 +212,8 @@ def _positive(value: ArrayLike, what: str) -> Floats:
 
 
 @lru_cache(maxsize=1)
-def _unit_nodes() -> tuple[Floats, Floats]:
-    x, w = leggauss(20)
-    return 0.5 * (x + 1), 0.5 * w
-
-
-@lru_cache(maxsize=1)
 def _wide_nodes() -> tuple[Floats, Floats]:
-    s, w = _unit_nodes()
+    s, w = gauss(20)
     starts = np.arange(1.0, 110.0, 4.0)[:, None]
     x = np.concatenate([s**4, (starts + 4 * s).ravel()])
     return x, np.concatenate([4 * s**3 * w, np.tile(4 * w, len(starts))])

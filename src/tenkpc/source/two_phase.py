@@ -19,7 +19,6 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 import numpy as np
-from numpy.polynomial.legendre import leggauss
 from numpy.typing import ArrayLike, NDArray
 
 from tenkpc.constants import (
@@ -29,6 +28,7 @@ from tenkpc.constants import (
     NEUTRON_MASS_MEV,
     SOLAR_MASS_G,
 )
+from tenkpc.quadrature import gauss
 from tenkpc.source.spectra import fermi_integral
 from tenkpc.species import ANTI_NU_E, ANTI_NU_X, NU_E, NU_X, SPECIES
 
@@ -141,13 +141,13 @@ class TwoPhase:
 
     def _accretion_moment(self, order: float, t: Floats) -> Floats:
         """∫ Eⁿ Ṅ_a dE, over E_e/T from 0 to where nothing is left."""
-        x, w = leggauss(NODES)
+        x, w = gauss(NODES)
         temperature = self.accretion_temperature_at(t)[:, None]
-        positron = 0.5 * REACH * (1 + x) * temperature
+        positron = REACH * x * temperature
         # E from E_e: E = (E_e + Δ)/(1 + E_e/m_n)
         energy = (positron + GAP_MEV) / (1 + positron / NEUTRON_MASS_MEV)
         slope = (1 - energy / NEUTRON_MASS_MEV) / (1 + positron / NEUTRON_MASS_MEV)
-        weight = 0.5 * REACH * w * temperature * slope
+        weight = REACH * w * temperature * slope
         integral: Floats = (energy**order * self.accretion(t[:, None], energy) * weight).sum(axis=1)
         return integral
 
