@@ -76,6 +76,28 @@ def test_json_holds_the_numbers_of_python():
     assert record["counts"].keys() == set(forecast.keys)
 
 
+@pytest.mark.parametrize("kind", ["burst", "detector"])
+def test_new_writes_a_file_to_begin_with(tmp_path, kind):
+    """The file is valid as it is, and never written over another."""
+    path = tmp_path / "mine.toml"
+    assert "tenkpc check" in run("new", kind, str(path)).output
+    assert run("check", str(path)).exit_code == 0
+    text = path.read_text(encoding="utf-8")
+    path.write_text(text + "# mine")
+    done = run("new", kind, str(path))
+    assert done.exit_code == 2
+    assert "left as it is" in done.stderr
+    assert path.read_text(encoding="utf-8").endswith("# mine")
+
+
+@pytest.mark.parametrize(("suffix", "words"), [("md", "| seen as |"), ("tex", r"\begin{tabular}")])
+def test_pages_go_into_reports(tmp_path, suffix, words):
+    """Markdown and LaTeX of the same page."""
+    path = tmp_path / f"page.{suffix}"
+    assert run("forecast", "brine-hall", "--out", str(path)).exit_code == 0
+    assert words in path.read_text(encoding="utf-8")
+
+
 def test_only_and_between_narrow_the_forecast():
     """Other interactions are switched off, and other times left out."""
     words = ("--only", "electron-scattering", "--between", "0 s", "1 s", "--json")

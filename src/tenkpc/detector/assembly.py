@@ -53,11 +53,10 @@ def volumes(keys: DetectorKeys, document: Document) -> tuple[Volume, ...]:
     known: dict[tuple[Light | None, ...], Response] = {}
     made = []
     for volume in keys.volume:
-        composition = _composition(volume)[1]
+        words, composition = _composition(volume)
         light = _proton_light(keys.response, volume, composition, document)
         if (light,) not in known:
             known[light,] = _response(keys, curve, light)
-        words = _composition(volume)[0]
         made.append(Volume(volume.name, volume.mass, words, composition, known[light,]))
     return tuple(made)
 
@@ -82,7 +81,9 @@ def _composition(keys: VolumeKeys) -> tuple[str, Composition]:
     """Words for what a volume is made of, and the composition."""
     key = next(key for key in COMPOSITIONS if getattr(keys, key) is not None)
     made_of = getattr(keys, key)
-    words = made_of if isinstance(made_of, str) else " + ".join(made_of)
+    if isinstance(made_of, str):
+        return made_of, COMPOSITIONS[key](made_of)
+    words = " + ".join(f"{100 * share:.3g} % {name}" for name, share in made_of.items())
     return words, COMPOSITIONS[key](made_of)
 
 
