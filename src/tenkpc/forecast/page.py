@@ -14,6 +14,7 @@ from tenkpc.forecast import budget, words
 from tenkpc.forecast import compiled as columns
 from tenkpc.forecast.others import other_bursts, other_conversions
 from tenkpc.rendering import (
+    GROUPS,
     Block,
     Facts,
     Page,
@@ -183,7 +184,7 @@ def _both(forecast: Forecast) -> str:
 
 def _factors(forecast: Forecast, cases: Sequence[tuple[str, Forecast]]) -> str:
     ratios = ((other.total / forecast.total, name) for name, other in cases)
-    return ", ".join(f"× {ratio:.2f} {name}" for ratio, name in ratios)
+    return ", ".join(f"×{GROUPS}{ratio:.2f}{GROUPS}{name}" for ratio, name in ratios)
 
 
 def _background(forecast: Forecast) -> str:

@@ -11,6 +11,7 @@ from tenkpc import __version__, data, interactions
 from tenkpc.detector.detector import Detector
 from tenkpc.documents import Document
 from tenkpc.errors import InputError
+from tenkpc.forecast import budget
 from tenkpc.forecast.frames import named
 from tenkpc.propagation import conversion
 from tenkpc.source.burst import Burst
@@ -78,7 +79,7 @@ def _made(inputs: Mapping[str, Any], kind: type[Forecast]) -> Forecast:
 
 def _record(forecast: Forecast) -> dict[str, Any]:
     fall, rise = forecast.cross_section_error
-    chance = forecast.chance
+    chance, both = forecast.chance, forecast.predictive
     reactions, above, counted = forecast.chain
     return {
         "tenkpc_version": __version__,
@@ -88,6 +89,8 @@ def _record(forecast: Forecast) -> dict[str, Any]:
         "chain": {"reactions": reactions, "above_threshold": above, "counted": counted},
         "chance_68_percent": [chance.low, chance.high],
         "cross_section_error": {"down": fall, "up": rise},
+        "chance_and_cross_sections_68_percent": [both.low, both.high],
+        "budget": [effect._asdict() for effect in budget.effects(forecast)],
         "background": {"live_s": forecast.live_s, "counted": forecast.background_events},
         "counts": _counts(forecast),
         "sources": {

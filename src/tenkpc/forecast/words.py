@@ -186,6 +186,8 @@ def _beyond_the_shell(forecast: Forecast) -> Iterator[str]:
         yield "this conversion"
     if forecast.energy_above_mev is not None:
         yield "a cut in energy"
+    if forecast.background_time_s is not None:
+        yield "a time for the background"
     choices = {key: value for key, value in forecast.interactions.items() if value is not False}
     changes = [*detector.document.changes, *burst.document.changes, *choices.items()]
     yield from (f"{key} = {value}" for key, value in changes)

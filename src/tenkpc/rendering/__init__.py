@@ -182,14 +182,17 @@ def _html_block(block: Block) -> str:
 
 
 def _html_table(table: Table) -> str:
-    head = "".join(f"<th{_align(i)}>{_html.escape(t)}</th>" for i, t in enumerate(table.titles))
+    head = "".join(
+        f"<th{_align(i, ';white-space:nowrap')}>{_html.escape(t)}</th>"
+        for i, t in enumerate(table.titles)
+    )
     body = "".join(_html_row(row) for row in table.rows)
     top = f"<thead><tr>{head}</tr></thead>" if head else ""
     return f'<table style="border-collapse:collapse">{top}<tbody>{body}</tbody></table>'
 
 
 def _html_row(row: Row) -> str:
-    indent = f";padding-left:{1.5 * row.level}em"
+    indent = f";padding-left:{0.6 + 1.5 * row.level:g}em"
     cells = [
         f"<td{_align(i, indent if i == 0 else '')}>{_html.escape(cell)}</td>"
         for i, cell in enumerate(row.cells)

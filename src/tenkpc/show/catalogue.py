@@ -3,7 +3,8 @@
 from __future__ import annotations
 
 import json
-from collections.abc import Callable, Mapping
+import math
+from collections.abc import Callable, Iterator, Mapping
 from typing import NamedTuple
 
 import numpy as np
@@ -12,12 +13,26 @@ from tenkpc import interactions
 from tenkpc.detector import gallery, materials
 from tenkpc.detector.detector import Detector
 from tenkpc.errors import UnknownNameError
-from tenkpc.rendering import Facts, Page, Paragraph, columns_of, pad, percent, text
+from tenkpc.rendering import (
+    Facts,
+    Page,
+    Paragraph,
+    Row,
+    Rule,
+    Table,
+    columns_of,
+    pad,
+    percent,
+    text,
+)
 from tenkpc.source.burst import Burst
 from tenkpc.species import SPECIES, SYMBOLS
 
 # energies at which a cross section and its error are quoted, MeV
 QUOTED_MEV = np.array([10.0, 20.0, 40.0])
+# errors from here on are said as factors
+FACTOR_FROM = 0.3
+QUOTED = tuple(f"{energy:g} MeV" for energy in QUOTED_MEV)
 
 
 class Catalogue(NamedTuple):
@@ -83,10 +98,13 @@ def _interaction(key: str) -> Page:
         ("threshold", f"{interaction.threshold_mev:.4g} MeV"),
         ("seen as", "; ".join(_ways(key))),
         ("options", ", ".join(interactions.OPTIONS.get(key, ())) or "none"),
-        *_cross_sections(key),
     ]
     references = [Paragraph(f"{r}: {r.used_for}", small=True) for r in interaction.references]
-    return [Paragraph(interaction.equation), Facts(tuple(rows)), *references]
+    table = Table(
+        tuple(_cross_sections(key)),
+        ("σ per target in cm²", *QUOTED, f"1σ at {QUOTED[1]}", "window"),
+    )
+    return [Paragraph(interaction.equation), Facts(tuple(rows)), Rule(), table, Rule(), *references]
 
 
 def _ways(key: str) -> tuple[str, ...]:
@@ -95,20 +113,24 @@ def _ways(key: str) -> tuple[str, ...]:
     return tuple(dict.fromkeys(state.seen_as for states in branches for state in states))
 
 
-def _cross_sections(key: str) -> list[tuple[str, str]]:
-    """σ, its error and its window for each species that the interaction is open to."""
-    interaction = interactions.by_key(key)
-    rows = []
-    for species in SPECIES:
-        for state in interaction.final_states(species):
-            values = state.sigma_cm2(QUOTED_MEV)
-            quoted = ", ".join(f"{value:.3g}" for value in values)
-            error = percent(float(state.relative_error(QUOTED_MEV)[1]))
-            window = " to ".join(f"{edge:.4g}" for edge in state.window_mev)
-            name = f"σ {SYMBOLS[species]}, {state.label}"
-            energies = ", ".join(f"{energy:g}" for energy in QUOTED_MEV)
-            rows.append((name, f"{quoted} cm² at {energies} MeV, ± {error}, for {window} MeV"))
-    return rows
+def _cross_sections(key: str) -> Iterator[Row]:
+    """σ, its error at the middle energy and its window, for kinds that react alike together."""
+    branches = interactions.by_key(key).branches
+    alike: dict[tuple[int, ...], list[str]] = {}
+    for species in (s for s in SPECIES if s in branches):
+        alike.setdefault(tuple(map(id, branches[species])), []).append(species)
+    for kinds in alike.values():
+        yield Row((", ".join(SYMBOLS[species] for species in kinds),))
+        for state in branches[kinds[0]]:
+            values = [f"{value:.3g}" for value in state.sigma_cm2(QUOTED_MEV)]
+            error = _error(float(state.relative_error(QUOTED_MEV)[1]))
+            window = f"{state.window_mev[0]:.3g} to {state.window_mev[1]:.3g}"
+            yield Row((state.label, *values, error, window), level=1)
+
+
+def _error(error: float) -> str:
+    """Print 1σ of ln σ: per cent where it is small, a factor where it is not."""
+    return f"± {percent(error)}" if error < FACTOR_FROM else f"× or ÷ {math.exp(error):.2g}"
 
 
 CATALOGUES: Mapping[str, Catalogue] = {

@@ -171,7 +171,7 @@ class Core:
         t = _after_bounce(time_s)
         accretion = self._accreting(t) * (1 + _column(self.growth) * self._grown(t))
         cooling = (1 + t / self.plateau_s) ** -self.cooling_power
-        cooling = cooling * np.exp(-((t / self.cooling_time_s) ** self.cooling_sharpness))
+        cooling = cooling * _stretched(t, self.cooling_time_s, self.cooling_sharpness)
         both = _column(self.accretion_mev_s) * accretion + _column(self.cooling_mev_s) * cooling
         return -np.expm1(-t / self.rise_time_s) * both * self._gate(t)
 
@@ -202,8 +202,7 @@ class Core:
         return self.luminosity_mev_s(time_s) / mean * shape
 
     def _accreting(self, t: Floats) -> Floats:
-        # an infinite power is a step; numpy gives 0, 1 or inf for it, and exp does the rest
-        return np.asarray(np.exp(-((t / self.accretion_time_s) ** self.accretion_sharpness)))
+        return _stretched(t, self.accretion_time_s, self.accretion_sharpness)
 
     def _grown(self, t: Floats) -> Floats:
         return np.asarray(np.minimum(t / self.growth_time_s, 1.0))
@@ -214,6 +213,12 @@ class Core:
 
 def _after_bounce(time_s: ArrayLike) -> Floats:
     return np.asarray(np.maximum(np.asarray(time_s, float), 0.0))
+
+
+def _stretched(t: Floats, scale_s: float, power: float) -> Floats:
+    """exp(−(t/scale)^power); a huge or infinite power is a step, the power then 0, 1 or inf."""
+    with np.errstate(over="ignore"):
+        return np.asarray(np.exp(-((t / scale_s) ** power)))
 
 
 def _column(values: PerSpecies) -> Floats:
