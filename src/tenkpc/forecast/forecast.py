@@ -3,11 +3,10 @@
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
-from functools import cached_property
 from typing import TYPE_CHECKING, Any
 
 import numpy as np
-from numpy.typing import ArrayLike, NDArray
+from numpy.typing import NDArray
 
 from tenkpc import rendering
 from tenkpc.detector.detector import Detector
@@ -17,20 +16,16 @@ from tenkpc.forecast import (
     arguments,
     budget,
     compare,
-    exposures,
-    flux,
     frames,
     page,
     quote,
     record,
 )
-from tenkpc.forecast import compiled as columns
 from tenkpc.forecast.arguments import Quantity
 from tenkpc.forecast.bursts import BurstRange
-from tenkpc.forecast.fold import fold
-from tenkpc.forecast.grid import EnergyGrid
+from tenkpc.forecast.evaluation import Evaluation
 from tenkpc.forecast.uncertainty import Interval, poisson_interval, predictive_interval
-from tenkpc.propagation.conversion import Adiabatic, Conversion, Unconverted
+from tenkpc.propagation.conversion import Adiabatic, Conversion
 from tenkpc.rendering import markup
 from tenkpc.source.burst import Burst
 
@@ -41,22 +36,9 @@ Floats = NDArray[np.float64]
 
 # points of a scan over distance
 SCAN_POINTS = 61
-# background is counted for so long at the most, unless another time is given
-BACKGROUND_AT_MOST_S = 20.0
-# everything that a forecast is made of
-INPUTS = (
-    "detector",
-    "burst",
-    "distance_kpc",
-    "conversion",
-    "interactions",
-    "window_s",
-    "energy_above_mev",
-    "background_time_s",
-)
 
 
-class Forecast:
+class Forecast(Evaluation):
     """Expected counts of a detector for a burst at a distance.
 
     The inputs are kept and never change; a result is computed when it is first asked for.
@@ -153,26 +135,6 @@ class Forecast:
             detector=self.detector.replace(of_detector) if of_detector else self.detector,
         )
 
-    def _with(self, **changed: Any) -> Forecast:
-        """Make a forecast that differs in some inputs and shares no results."""
-        other = object.__new__(Forecast)
-        for name in INPUTS:
-            setattr(other, name, changed.get(name, getattr(self, name)))
-        return other
-
-    @property
-    def total(self) -> float:
-        """Expected number of counted events."""
-        return float(self.counted.sum())
-
-    @property
-    def chain(self) -> tuple[float, float, float]:
-        """Reactions, those above threshold, those counted: rows that the medium sees."""
-        seen = [i for i, row in enumerate(self.rows) if row.seen_as]
-        sums = self.row_values[seen].sum(axis=0)
-        reactions, above = sums[columns.REACTIONS], sums[columns.ABOVE_THRESHOLD]
-        return float(reactions), float(above), float(sums[columns.FIRST_BIN :].sum())
-
     @property
     def chance(self) -> Interval:
         """Counts between which 68 % of repetitions of this very burst would fall."""
@@ -200,18 +162,6 @@ class Forecast:
         It is part of no total, and no conversion or distance changes it.
         """
         return frames.background(self.detector.backgrounds, self._background_hz(), self.live_s)
-
-    @property
-    def live_s(self) -> float:
-        """Time in s for which background is counted."""
-        if self.background_time_s is not None:
-            return self.background_time_s
-        return min(self.span_s[1] - self.span_s[0], BACKGROUND_AT_MOST_S)
-
-    @property
-    def background_events(self) -> float:
-        """Expected number of background events in that time."""
-        return float(self._background_hz().sum()) * self.live_s
 
     @property
     def budget(self) -> DataFrame:
@@ -291,36 +241,14 @@ class Forecast:
             A detector with backgrounds has one column more, ``background``, for ``live_s``.
         """
         edges = arguments.energy_edges_mev(bins)
-        if of == "observed":
-            tensor = self._compile(edges).tensor[:, :, columns.FIRST_BIN :]
-        elif of == "neutrino":
-            tensor = exposures.compiled_by_neutrino_energy(*self._inputs, edges)
-        else:
+        if of not in ("observed", "neutrino"):
             message = f"of: expected 'observed' or 'neutrino', found {of!r}"
             raise InputError(message)
-        names, owner = self._columns_by(by)
-        folded = fold(self._fluence, self._compiled.species, tensor)[:, 0]
-        values = _summed(folded, owner, len(names))
-        kind = self.detector.response.kind if of == "observed" else of
-        noise = self._background_spectrum(np.array(edges)) if of == "observed" else None
+        observed = of == "observed"
+        names, values = self._spectrum(edges, by, observed=observed)
+        kind = self.detector.response.kind if observed else of
+        noise = self._background_spectrum(np.array(edges)) if observed else None
         return frames.spectrum(names, values, np.array(edges), kind, noise)
-
-    def fluence(self, energy_mev: ArrayLike, *, converted: bool = True) -> Floats:
-        """Fluence of ONE kind of each species at the detector, (4, energies), cm⁻² MeV⁻¹.
-
-        Parameters
-        ----------
-        energy_mev
-            neutrino energies in MeV.
-        converted
-            after flavour conversion; otherwise as emitted, over the same sphere.
-        """
-        energy = np.atleast_1d(np.asarray(energy_mev, dtype=float))
-        spectra, times = flux.emission(self.burst, energy, self.span_s)
-        case: Conversion = self.conversion if converted else Unconverted()
-        arriving = flux.at_detector(spectra, case, self.distance_kpc, energy, times)
-        total: Floats = arriving.sum(axis=1)
-        return total
 
     def light_curve(
         self, bins: Quantity | Sequence[Quantity], *, by: str = "interaction"
@@ -342,15 +270,9 @@ class Forecast:
         """
         self._needs_time("light_curve")
         edges = arguments.time_edges_s(bins, self.span_s)
-        names, owner = self._columns_by(by)
-        values = np.zeros((len(edges) - 1, len(names)))
-        for times, weights, places in flux.binned_time_nodes(self.burst, edges, self.span_s):
-            emitted = self.burst.rate(times, self._grid.nodes_mev) * weights[:, None]
-            arriving = self._at_detector(emitted, times)
-            counted = fold(arriving, self._compiled.species, self._compiled.counted)[:, :, 0]
-            np.add.at(values, places, _summed(counted, owner, len(names)).T)
+        names, values = self._light_curve(edges, by)
         noise = self._background_hz().sum() if self.detector.backgrounds else None
-        return frames.light_curve(names, values.T, edges, noise)
+        return frames.light_curve(names, values, edges, noise)
 
     def versus_distance(self, nearest: Quantity, farthest: Quantity) -> DataFrame:
         """Counted events by interaction at distances between two, evenly spaced in ratio."""
@@ -403,97 +325,8 @@ class Forecast:
     def _repr_html_(self) -> str:
         return rendering.html(page.results(self))
 
-    @cached_property
-    def keys(self) -> tuple[str, ...]:
-        """Interactions that take part, alphabetically."""
-        return tuple(sorted({row.interaction for row in self.rows}))
-
-    @property
-    def counted(self) -> Floats:
-        """Counted events by interaction, in the order of `keys`."""
-        counted: Floats = self.by_interaction[:, columns.FIRST_BIN :].sum(axis=1)
-        return counted
-
-    @cached_property
-    def by_interaction(self) -> Floats:
-        """Events by interaction and column of the compiled tensor."""
-        return _summed(self.row_values, self._columns_by("interaction")[1], len(self.keys))
-
-    @property
-    def rows(self) -> tuple[columns.Row, ...]:
-        """What each row of the compiled tensor counts: a final state of a species in a volume."""
-        return self._compiled.rows
-
-    @cached_property
-    def row_values(self) -> Floats:
-        """Events by row and column of the compiled tensor."""
-        return fold(self._fluence, self._compiled.species, self._compiled.tensor)[:, 0]
-
-    def _columns_by(self, by: str) -> tuple[tuple[str, ...], list[int]]:
-        """Names of the columns of a table, and which of them each row belongs to."""
-        if by not in ("interaction", "seen"):
-            message = f"by: expected 'interaction' or 'seen', found {by!r}"
-            raise InputError(message)
-        mine = [row.interaction if by == "interaction" else row.seen_as for row in self.rows]
-        names = tuple(sorted(set(filter(None, mine))))
-        # rows that are not seen count nothing, so they may stand anywhere
-        return names, [names.index(name) if name else 0 for name in mine]
-
-    @cached_property
-    def _grid(self) -> EnergyGrid:
-        return EnergyGrid.with_joints(self.burst.joints_mev)
-
-    @property
-    def _inputs(self) -> tuple[Detector, exposures.Choices, float | None, EnergyGrid]:
-        chosen = exposures.choices(self.detector, self.interactions)
-        return self.detector, chosen, self.energy_above_mev, self._grid
-
-    def _compile(self, edges_mev: tuple[float, ...]) -> columns.Compiled:
-        return exposures.compiled(*self._inputs, edges_mev)
-
-    @cached_property
-    def _compiled(self) -> columns.Compiled:
-        return self._compile(arguments.energy_edges_mev(None))
-
-    @cached_property
-    def _fluence(self) -> Floats:
-        """Fluence of one kind of each species at the nodes, (species, 1, nodes), cm⁻² MeV⁻¹."""
-        emitted = flux.emission(self.burst, self._grid.nodes_mev, self.span_s)
-        fluence: Floats = self._at_detector(*emitted).sum(axis=1, keepdims=True)
-        return fluence
-
-    def _at_detector(self, spectra: Floats, times: Floats) -> Floats:
-        nodes = self._grid.nodes_mev
-        return flux.at_detector(spectra, self.conversion, self.distance_kpc, nodes, times)
-
-    def _background_hz(self) -> Floats:
-        """Rate of each background above the lowest energy that is counted, (backgrounds,)."""
-        threshold, lowest = self.detector.response.threshold_mev, self.energy_above_mev or 0.0
-        sources = self.detector.backgrounds
-        return np.array([source.above_hz(lowest, threshold) for source in sources])
-
-    def _background_spectrum(self, edges_mev: Floats) -> Floats | None:
-        """Background events by bin of observed energy, then above the last edge."""
-        threshold, lowest = self.detector.response.threshold_mev, self.energy_above_mev or 0.0
-        rates = [
-            source.spectrum_hz(edges_mev, lowest, threshold) for source in self.detector.backgrounds
-        ]
-        return np.sum(rates, axis=0) * self.live_s if rates else None
-
-    @property
-    def span_s(self) -> tuple[float, float]:
-        """First and last time after bounce that is counted, s."""
-        return self.window_s or (self.burst.start_s, self.burst.end_s)
-
     def _needs_time(self, what: str) -> None:
         if self.burst.time_integrated:
             title = self.burst.title
             message = f"{what}: {title!r} is integrated over time and has no time profile"
             raise InputError(message)
-
-
-def _summed(values: Floats, owner: Sequence[int], count: int) -> Floats:
-    """Add up the rows that belong together: (rows, ...) -> (columns, ...)."""
-    summed = np.zeros((max(count, 1), *values.shape[1:]))
-    np.add.at(summed, list(owner), values)
-    return summed[:count]
