@@ -2,20 +2,17 @@
 
 from __future__ import annotations
 
-from typing import TYPE_CHECKING
+from collections.abc import Sequence
 
+from tenkpc.detector.assembly import Volume
 from tenkpc.rendering import Page, Paragraph, Row, Rule, Table
 
-if TYPE_CHECKING:
-    from tenkpc.detector.assembly import Volume
-    from tenkpc.detector.detector import Detector
 
-
-def page(detector: Detector) -> Page:
+def page(title: str, about: str, volumes: Sequence[Volume]) -> Page:
     """Lay out masses, free protons, electrons and nuclei by isotope, volume by volume."""
-    about = [Paragraph(detector.about)] if detector.about else []
-    tables = [Table(_rows(volume), ("", "per kg", "in all")) for volume in detector.volumes]
-    return [Paragraph(f"{detector.title} ({detector.origin})"), *about, Rule(), *tables]
+    words = [Paragraph(about)] if about else []
+    tables = [Table(_rows(volume), ("", "per kg", "in all")) for volume in volumes]
+    return [Paragraph(title), *words, Rule(), *tables]
 
 
 def _rows(volume: Volume) -> tuple[Row, ...]:

@@ -144,7 +144,8 @@ class Detector:
 
     def describe(self) -> str:
         """Say what the detector is made of, in kilograms and numbers of targets."""
-        return rendering.text(description.page(self))
+        title = f"{self.title} ({self.origin})"
+        return rendering.text(description.page(title, self.about, self.volumes))
 
     def __repr__(self) -> str:
         return f"<Detector {self.title!r} from {self.origin}>"

@@ -12,12 +12,11 @@ from typing import TYPE_CHECKING, NamedTuple
 
 from tenkpc import interactions
 from tenkpc.forecast import compiled as columns
+from tenkpc.forecast.evaluation import Evaluation
 from tenkpc.forecast.uncertainty import in_quadrature
 
 if TYPE_CHECKING:
     from pandas import DataFrame
-
-    from tenkpc.forecast.forecast import Forecast
 
 
 class Effect(NamedTuple):
@@ -31,7 +30,7 @@ class Effect(NamedTuple):
     origin: str
 
 
-def effects(forecast: Forecast) -> Iterator[Effect]:
+def effects(forecast: Evaluation) -> Iterator[Effect]:
     """Every row of the budget: chance, cross sections, detector, mixing angles."""
     total, chance = forecast.total, forecast.chance
     falls = total - chance.low, chance.high - total
@@ -41,7 +40,7 @@ def effects(forecast: Forecast) -> Iterator[Effect]:
     yield from mixing(forecast)
 
 
-def cross_sections(forecast: Forecast) -> Iterator[Effect]:
+def cross_sections(forecast: Evaluation) -> Iterator[Effect]:
     """One row per interaction that counts anything."""
     rows = zip(forecast.keys, forecast.counted, forecast.by_interaction, strict=True)
     for key, value, row in rows:
@@ -51,7 +50,7 @@ def cross_sections(forecast: Forecast) -> Iterator[Effect]:
             yield Effect(key, "cross section", fall, rise, "over all energies", source)
 
 
-def detector(forecast: Forecast) -> Iterator[Effect]:
+def detector(forecast: Evaluation) -> Iterator[Effect]:
     """Mass, efficiency and energy scale, where the detector's file gives an error."""
     made, total = forecast.detector, forecast.total
     for name, error in (("mass", made.mass_error), ("efficiency", made.efficiency_error)):
@@ -65,7 +64,7 @@ def detector(forecast: Forecast) -> Iterator[Effect]:
         yield Effect("energy scale", "detector", total - low, high - total, words, made.origin)
 
 
-def mixing(forecast: Forecast) -> Iterator[Effect]:
+def mixing(forecast: Evaluation) -> Iterator[Effect]:
     """One row per mixing angle that the conversion depends on."""
     total = forecast.total
     for name, low, high in forecast.conversion.within_errors():
@@ -81,7 +80,7 @@ def combined(rows: Iterator[Effect]) -> tuple[float, float]:
     return in_quadrature(row.fall for row in found), in_quadrature(row.rise for row in found)
 
 
-def frame(forecast: Forecast) -> DataFrame:
+def frame(forecast: Evaluation) -> DataFrame:
     """Lay the budget out as a table, with per cent of the total beside the counts."""
     from pandas import DataFrame
 

@@ -9,12 +9,11 @@ from typing import TYPE_CHECKING
 
 from tenkpc import rendering
 from tenkpc.forecast import words
+from tenkpc.forecast.evaluation import Evaluation
 from tenkpc.rendering import Page, Paragraph, Row, Table, decimals_for, number
 
 if TYPE_CHECKING:
     from pandas import DataFrame
-
-    from tenkpc.forecast.forecast import Forecast
 
 
 @dataclass(frozen=True)
@@ -27,7 +26,7 @@ class BurstRange:
         one for each burst, in the order they were given.
     """
 
-    forecasts: tuple[Forecast, ...]
+    forecasts: tuple[Evaluation, ...]
 
     @property
     def minimum(self) -> float:
@@ -66,7 +65,7 @@ class BurstRange:
         least, middle, most = (
             number(value, decimals) for value in (self.minimum, self.median, self.maximum)
         )
-        ranked: Sequence[Forecast] = sorted(self.forecasts, key=lambda f: f.total)
+        ranked: Sequence[Evaluation] = sorted(self.forecasts, key=lambda f: f.total)
         rows = tuple(Row((f.burst.title, number(f.total, decimals))) for f in ranked)
         return [
             Paragraph(

@@ -11,11 +11,10 @@ from tenkpc import textfiles
 from tenkpc.detector.detector import Detector
 from tenkpc.errors import InputError
 from tenkpc.forecast import words
+from tenkpc.forecast.evaluation import Evaluation
 
 if TYPE_CHECKING:
     from pandas import DataFrame
-
-    from tenkpc.forecast.forecast import Forecast
 
 # parts of a detector file that change no count
 SILENT = ("title", "about", "background", "uncertainty")
@@ -28,10 +27,10 @@ class Step(NamedTuple):
     change: str
     before: str
     after: str
-    forecast: Forecast
+    forecast: Evaluation
 
 
-def frame(first: Forecast, second: Forecast) -> DataFrame:
+def frame(first: Evaluation, second: Evaluation) -> DataFrame:
     """Factors that lead from the first total to the second; their product is the ratio.
 
     Raises
@@ -54,7 +53,7 @@ def frame(first: Forecast, second: Forecast) -> DataFrame:
     return table.set_index("change")
 
 
-def steps(first: Forecast, second: Forecast) -> Iterator[Step]:
+def steps(first: Evaluation, second: Evaluation) -> Iterator[Step]:
     """Change one input after another until the first forecast has become the second.
 
     The order is fixed (detector, interactions, burst, distance, conversion, windows): a factor
@@ -62,11 +61,11 @@ def steps(first: Forecast, second: Forecast) -> Iterator[Step]:
     """
     at = first
     for change, before, after, detector in _detectors(first.detector, second.detector):
-        at = at._with(detector=detector)
+        at = at.changed(detector=detector)
         yield Step(change, before, after, at)
     for name, (change, describe) in _INPUTS.items():
         if getattr(first, name) != getattr(second, name):
-            at = at._with(**{name: getattr(second, name)})
+            at = at.changed(**{name: getattr(second, name)})
             yield Step(change, describe(first), describe(second), at)
 
 

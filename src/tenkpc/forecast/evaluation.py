@@ -15,6 +15,12 @@ from tenkpc.forecast import arguments, exposures, flux
 from tenkpc.forecast import compiled as columns
 from tenkpc.forecast.fold import fold
 from tenkpc.forecast.grid import EnergyGrid
+from tenkpc.forecast.uncertainty import (
+    Interval,
+    in_quadrature,
+    poisson_interval,
+    predictive_interval,
+)
 from tenkpc.propagation.conversion import Conversion, Unconverted
 from tenkpc.source.burst import Burst
 
@@ -51,12 +57,25 @@ class Evaluation:
     energy_above_mev: float | None
     background_time_s: float | None
 
-    def _with(self, **changed: Any) -> Self:
-        """Make a forecast that differs in some inputs and shares no results."""
-        other = object.__new__(type(self))
+    @classmethod
+    def of_inputs(cls, **inputs: Any) -> Self:
+        """Make a forecast of inputs that were checked before, by the names of `INPUTS`."""
+        made = object.__new__(cls)
         for name in INPUTS:
-            setattr(other, name, changed.get(name, getattr(self, name)))
-        return other
+            setattr(made, name, inputs[name])
+        return made
+
+    def changed(self, **inputs: Any) -> Self:
+        """Make a forecast that differs in some inputs and shares no results."""
+        return self.of_inputs(**{name: inputs.get(name, getattr(self, name)) for name in INPUTS})
+
+    def converted(self, conversion: Conversion) -> Self:
+        """Forecast the same burst with another flavour conversion."""
+        return self.changed(conversion=conversion)
+
+    def of(self, burst: Burst) -> Self:
+        """Forecast another burst in the same detector."""
+        return self.changed(burst=burst)
 
     @property
     def total(self) -> float:
@@ -70,6 +89,27 @@ class Evaluation:
         sums = self.row_values[seen].sum(axis=0)
         reactions, above = sums[columns.REACTIONS], sums[columns.ABOVE_THRESHOLD]
         return float(reactions), float(above), float(sums[columns.FIRST_BIN :].sum())
+
+    @property
+    def chance(self) -> Interval:
+        """Counts between which 68 % of repetitions of this very burst would fall."""
+        return poisson_interval(self.total)
+
+    @property
+    def cross_section_error(self) -> tuple[float, float]:
+        """How much the total falls and rises when cross sections are 1σ off.
+
+        Correlated over energies and final states within an interaction, independent between
+        interactions; log-normal, so that no error however large takes more than all.
+        """
+        low, high = (self.by_interaction[:, c] for c in (columns.COUNTED_LOW, columns.COUNTED_HIGH))
+        return in_quadrature(self.counted - low), in_quadrature(high - self.counted)
+
+    @property
+    def predictive(self) -> Interval:
+        """Counts between which 68 % fall with chance and the cross sections' error together."""
+        error = 0.5 * sum(self.cross_section_error) / (self.total or 1.0)
+        return predictive_interval(self.total, error)
 
     @property
     def live_s(self) -> float:

@@ -24,7 +24,6 @@ from tenkpc.forecast import (
 from tenkpc.forecast.arguments import Quantity
 from tenkpc.forecast.bursts import BurstRange
 from tenkpc.forecast.evaluation import Evaluation
-from tenkpc.forecast.uncertainty import Interval, poisson_interval, predictive_interval
 from tenkpc.propagation.conversion import Adiabatic, Conversion
 from tenkpc.rendering import markup
 from tenkpc.source.burst import Burst
@@ -88,15 +87,7 @@ class Forecast(Evaluation):
 
     def at(self, distance: Quantity) -> Forecast:
         """Forecast the same burst at another distance."""
-        return self._with(distance_kpc=arguments.distance_kpc(distance))
-
-    def converted(self, conversion: Conversion) -> Forecast:
-        """Forecast the same burst with another flavour conversion."""
-        return self._with(conversion=conversion)
-
-    def of(self, burst: Burst) -> Forecast:
-        """Forecast another burst in the same detector."""
-        return self._with(burst=burst)
+        return self.changed(distance_kpc=arguments.distance_kpc(distance))
 
     def within(
         self,
@@ -119,7 +110,7 @@ class Forecast(Evaluation):
             changed["window_s"] = arguments.window_s(time, self.span_s)
         if energy_above is not None:
             changed["energy_above_mev"] = arguments.energy_above_mev(energy_above)
-        return self._with(**changed)
+        return self.changed(**changed)
 
     def replace(self, changes: Mapping[str, object]) -> Forecast:
         """Forecast with other values at some key paths of the detector or burst file.
@@ -130,30 +121,10 @@ class Forecast(Evaluation):
         mine = {key: key.startswith("burst.") for key in changes}
         of_burst = {k.removeprefix("burst."): v for k, v in changes.items() if mine[k]}
         of_detector = {k: v for k, v in changes.items() if not mine[k]}
-        return self._with(
+        return self.changed(
             burst=self.burst.replace(of_burst) if of_burst else self.burst,
             detector=self.detector.replace(of_detector) if of_detector else self.detector,
         )
-
-    @property
-    def chance(self) -> Interval:
-        """Counts between which 68 % of repetitions of this very burst would fall."""
-        return poisson_interval(self.total)
-
-    @property
-    def cross_section_error(self) -> tuple[float, float]:
-        """How much the total falls and rises when cross sections are 1σ off.
-
-        Correlated over energies and final states within an interaction, independent between
-        interactions; log-normal, so that no error however large takes more than all.
-        """
-        return budget.combined(budget.cross_sections(self))
-
-    @property
-    def predictive(self) -> Interval:
-        """Counts between which 68 % fall with chance and the cross sections' error together."""
-        error = 0.5 * sum(self.cross_section_error) / (self.total or 1.0)
-        return predictive_interval(self.total, error)
 
     @property
     def background(self) -> DataFrame:

@@ -2,13 +2,13 @@
 
 from __future__ import annotations
 
-from typing import TYPE_CHECKING
+from typing import TypeVar
 
+from tenkpc.forecast.evaluation import Evaluation
 from tenkpc.propagation.conversion import Adiabatic, Conversion, Equilibrated, Unconverted
 from tenkpc.source.burst import Burst
 
-if TYPE_CHECKING:
-    from tenkpc.forecast.forecast import Forecast
+Made = TypeVar("Made", bound=Evaluation)
 
 CASES: tuple[tuple[str, Conversion], ...] = (
     ("unconverted", Unconverted()),
@@ -18,12 +18,12 @@ CASES: tuple[tuple[str, Conversion], ...] = (
 )
 
 
-def other_conversions(forecast: Forecast) -> list[tuple[str, Forecast]]:
+def other_conversions(forecast: Made) -> list[tuple[str, Made]]:
     """Name every other conversion, with the same forecast under it."""
     return [(name, forecast.converted(case)) for name, case in CASES if case != forecast.conversion]
 
 
-def other_bursts(forecast: Forecast) -> list[tuple[str, Forecast]]:
+def other_bursts(forecast: Made) -> list[tuple[str, Made]]:
     """Name every burst of the package but this one, with the same forecast of it.
 
     A burst that knows no time cannot be cut to a window, so it is left out where one is set.

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Collection, Sequence
-from typing import TYPE_CHECKING, NamedTuple
+from typing import NamedTuple
 
 import numpy as np
 from numpy.typing import NDArray
@@ -12,6 +12,7 @@ from numpy.typing import NDArray
 from tenkpc import interactions
 from tenkpc.forecast import budget, words
 from tenkpc.forecast import compiled as columns
+from tenkpc.forecast.evaluation import Evaluation
 from tenkpc.forecast.others import other_bursts, other_conversions
 from tenkpc.rendering import (
     GROUPS,
@@ -27,9 +28,6 @@ from tenkpc.rendering import (
     percent,
 )
 
-if TYPE_CHECKING:
-    from tenkpc.forecast.forecast import Forecast
-
 Floats = NDArray[np.float64]
 
 # rows below this share of the total are collapsed into one line
@@ -42,7 +40,7 @@ FEW = 10
 SOURCES_FOR = 3
 
 
-def results(forecast: Forecast) -> Page:
+def results(forecast: Evaluation) -> Page:
     """Lay out the results of a forecast."""
     return [
         Paragraph(words.opening(forecast)),
@@ -58,7 +56,7 @@ def results(forecast: Forecast) -> Page:
     ]
 
 
-def assumptions(forecast: Forecast) -> Page:
+def assumptions(forecast: Evaluation) -> Page:
     """Lay out what went into a forecast, with the origin of every value."""
     facts = tuple(
         (name, f"{value} ({origin})") for name, value, origin in words.assumptions(forecast)
@@ -76,14 +74,14 @@ def assumptions(forecast: Forecast) -> Page:
     ]
 
 
-def _chain(forecast: Forecast) -> Block:
+def _chain(forecast: Evaluation) -> Block:
     decimals = decimals_for(forecast.total)
     names = ("reactions", "above threshold", "counted")
     steps = zip(names, forecast.chain, strict=True)
     return Paragraph("  →  ".join(f"{name} {number(value, decimals)}" for name, value in steps))
 
 
-def _seen(forecast: Forecast) -> Block:
+def _seen(forecast: Evaluation) -> Block:
     """Rows grouped by what the detector sees, the largest first, with small ones collapsed."""
     decimals, total = decimals_for(forecast.total), forecast.total or 1.0
     rows, small = [], []
@@ -114,7 +112,7 @@ class _Entry(NamedTuple):
     error: float  # half the distance between 1σ low and high, relative
 
 
-def _groups(forecast: Forecast) -> list[tuple[str, list[_Entry]]]:
+def _groups(forecast: Evaluation) -> list[tuple[str, list[_Entry]]]:
     """Entries by what is seen, the largest group and the largest entry first."""
     sums: dict[tuple[str, str], Floats] = {}
     wanted = [columns.COUNTED_LOW, columns.COUNTED_HIGH]
@@ -150,7 +148,7 @@ def _collapsed(
     return rows
 
 
-def _uncertainty(forecast: Forecast) -> Block:
+def _uncertainty(forecast: Evaluation) -> Block:
     """Lines of uncertainty, each in counts and per cent; then ranges and background."""
     rows = [("chance", _chance(forecast))]
     for name, effects in (
@@ -177,23 +175,23 @@ def _error(fall: float, rise: float, total: float) -> str:
     return f"{counts}, − {percent(fall / scale)} + {percent(rise / scale)}"
 
 
-def _both(forecast: Forecast) -> str:
+def _both(forecast: Evaluation) -> str:
     span = forecast.predictive
     return f"{number(span.low)} to {number(span.high)} in 68 % of bursts"
 
 
-def _factors(forecast: Forecast, cases: Sequence[tuple[str, Forecast]]) -> str:
+def _factors(forecast: Evaluation, cases: Sequence[tuple[str, Evaluation]]) -> str:
     ratios = ((other.total / forecast.total, name) for name, other in cases)
     return ", ".join(f"×{GROUPS}{ratio:.2f}{GROUPS}{name}" for ratio, name in ratios)
 
 
-def _background(forecast: Forecast) -> str:
+def _background(forecast: Evaluation) -> str:
     events = forecast.background_events
     span = f"{forecast.live_s:.3g} s"
     return f"{number(events, decimals_for(events))} events in {span}, in no total"
 
 
-def _chance(forecast: Forecast) -> str:
+def _chance(forecast: Evaluation) -> str:
     """Say how far chance alone scatters the count; for a few events, how often none is seen."""
     total, chance = forecast.total, forecast.chance
     span = f"{number(chance.low)} to {number(chance.high)} in 68 % of bursts"
@@ -202,7 +200,7 @@ def _chance(forecast: Forecast) -> str:
     return f"{span}, ± {percent(0.5 * (chance.high - chance.low) / total)}"
 
 
-def _warnings(forecast: Forecast) -> list[str]:
+def _warnings(forecast: Evaluation) -> list[str]:
     outside = forecast.by_interaction[:, columns.COUNTED_OUTSIDE]
     share = outside / np.maximum(forecast.counted, 1e-300)
     lines = [
@@ -216,7 +214,7 @@ def _warnings(forecast: Forecast) -> list[str]:
     return lines
 
 
-def _foot(forecast: Forecast) -> list[str]:
+def _foot(forecast: Evaluation) -> list[str]:
     outside = forecast.by_interaction[:, columns.COUNTED_OUTSIDE].sum() / (forecast.total or 1.0)
     sources = [
         f"{key}: {'; '.join(map(str, references))}."

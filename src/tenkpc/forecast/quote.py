@@ -3,14 +3,11 @@
 from __future__ import annotations
 
 import math
-from typing import TYPE_CHECKING
 
 from tenkpc import __version__
 from tenkpc.forecast import budget, words
+from tenkpc.forecast.evaluation import Evaluation
 from tenkpc.rendering import number
-
-if TYPE_CHECKING:
-    from tenkpc.forecast.forecast import Forecast
 
 # digits of the largest error that are kept; the value and the other errors go as far
 ERROR_DIGITS = 2
@@ -18,7 +15,7 @@ ERROR_DIGITS = 2
 SOURCES_FOR = 3
 
 
-def sentence(forecast: Forecast) -> str:
+def sentence(forecast: Evaluation) -> str:
     """Say the result with everything that it depends on, rounded as its errors allow."""
     errors = _errors(forecast)
     place = _decimals(max(max(pair) for pair in errors.values()))
@@ -32,7 +29,7 @@ def sentence(forecast: Forecast) -> str:
     )
 
 
-def _errors(forecast: Forecast) -> dict[str, tuple[float, float]]:
+def _errors(forecast: Evaluation) -> dict[str, tuple[float, float]]:
     """Fall and rise of the total by cause."""
     chance = forecast.chance
     return {
@@ -62,7 +59,7 @@ def _rounded(value: float, decimals: int) -> str:
     return number(round(value, decimals), max(decimals, 0))
 
 
-def _sources(forecast: Forecast) -> str:
+def _sources(forecast: Evaluation) -> str:
     """Name the sources of the largest contributions."""
     return "; ".join(
         f"{key}: {', '.join(str(source) for source in sources)}"

@@ -5,30 +5,30 @@ from __future__ import annotations
 import json
 import warnings
 from collections.abc import Mapping
-from typing import TYPE_CHECKING, Any
+from typing import Any, TypeVar
 
 from tenkpc import __version__, data, interactions
 from tenkpc.detector.detector import Detector
 from tenkpc.documents import Document
 from tenkpc.errors import InputError
 from tenkpc.forecast import budget
+from tenkpc.forecast.evaluation import Evaluation
 from tenkpc.forecast.frames import named
 from tenkpc.propagation import conversion
 from tenkpc.source.burst import Burst
 
-if TYPE_CHECKING:
-    from tenkpc.forecast.forecast import Forecast
+Made = TypeVar("Made", bound=Evaluation)
 
 # totals of one version agree to this: the same sums in the same order, but for the library's
 SAME = 1e-10
 
 
-def to_json(forecast: Forecast) -> str:
+def to_json(forecast: Evaluation) -> str:
     """Write results, inputs, version and sources as JSON text."""
     return json.dumps(_record(forecast), indent=2, ensure_ascii=False, allow_nan=False)
 
 
-def from_json(text: str, kind: type[Forecast]) -> Forecast:
+def from_json(text: str, kind: type[Made]) -> Made:
     """Make a forecast again, and warn where its total is not the one that was written.
 
     Raises
@@ -61,23 +61,21 @@ def from_json(text: str, kind: type[Forecast]) -> Forecast:
     return made
 
 
-def _made(inputs: Mapping[str, Any], kind: type[Forecast]) -> Forecast:
-    made = kind(
-        Detector.of_document(Document.of_record(inputs["detector"])),
-        Burst.of_document(Document.of_record(inputs["burst"])),
-        distance=f"{inputs['distance_kpc']!r} kpc",
-        conversion=conversion.of_record(inputs["conversion"]),
-        interactions=inputs["interactions"],
-    )
+def _made(inputs: Mapping[str, Any], kind: type[Made]) -> Made:
     window = inputs["window_s"]
-    return made._with(
-        window_s=None if window is None else tuple(window),
+    return kind.of_inputs(
+        detector=Detector.of_document(Document.of_record(inputs["detector"])),
+        burst=Burst.of_document(Document.of_record(inputs["burst"])),
+        distance_kpc=float(inputs["distance_kpc"]),
+        conversion=conversion.of_record(inputs["conversion"]),
+        interactions=dict(inputs["interactions"]),
+        window_s=None if window is None else (float(window[0]), float(window[1])),
         energy_above_mev=inputs["energy_above_mev"],
         background_time_s=inputs["background_time_s"],
     )
 
 
-def _record(forecast: Forecast) -> dict[str, Any]:
+def _record(forecast: Evaluation) -> dict[str, Any]:
     fall, rise = forecast.cross_section_error
     chance, both = forecast.chance, forecast.predictive
     reactions, above, counted = forecast.chain
@@ -100,7 +98,7 @@ def _record(forecast: Forecast) -> dict[str, Any]:
     }
 
 
-def _inputs(forecast: Forecast) -> dict[str, Any]:
+def _inputs(forecast: Evaluation) -> dict[str, Any]:
     return {
         "detector": forecast.detector.document.record(),
         "burst": forecast.burst.document.record(),
@@ -115,7 +113,7 @@ def _inputs(forecast: Forecast) -> dict[str, Any]:
     }
 
 
-def _counts(forecast: Forecast) -> dict[str, dict[str, float]]:
+def _counts(forecast: Evaluation) -> dict[str, dict[str, float]]:
     table = named(forecast.by_interaction)
     return {
         key: {name: float(column[place]) for name, column in table.items()}

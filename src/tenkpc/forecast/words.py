@@ -4,23 +4,20 @@ from __future__ import annotations
 
 import shlex
 from collections.abc import Iterator
-from typing import TYPE_CHECKING
 
 from tenkpc import interactions
 from tenkpc.detector import gallery
 from tenkpc.detector.media import MEDIA
 from tenkpc.detector.response import Curve, Resolution
+from tenkpc.forecast.evaluation import Evaluation
 from tenkpc.interactions.base import Reference
 from tenkpc.rendering import decimals_for, number, percent
 from tenkpc.source.burst import Burst
 
-if TYPE_CHECKING:
-    from tenkpc.forecast.forecast import Forecast
-
 Assumption = tuple[str, str, str]
 
 
-def opening(forecast: Forecast) -> str:
+def opening(forecast: Evaluation) -> str:
     """Say in one sentence what was counted, where, and of what."""
     detector = forecast.detector
     total = number(forecast.total, decimals_for(forecast.total))
@@ -32,14 +29,14 @@ def opening(forecast: Forecast) -> str:
     )
 
 
-def filling(forecast: Forecast) -> str:
+def filling(forecast: Evaluation) -> str:
     """Say what is in the detector and how it sees: ``40 kt light water, by Cherenkov light``."""
     detector = forecast.detector
     parts = [f"{mass(volume.mass_kg)} {volume.material}" for volume in detector.volumes]
     return f"{' and '.join(parts)} seen by {MEDIA[detector.medium].words}"
 
 
-def window(forecast: Forecast) -> str:
+def window(forecast: Evaluation) -> str:
     """Say which part of the burst is counted."""
     if forecast.window_s is None:
         return "the whole burst"
@@ -47,12 +44,12 @@ def window(forecast: Forecast) -> str:
     return f"{start:g} s to {end:g} s after bounce"
 
 
-def window_clause(forecast: Forecast) -> str:
+def window_clause(forecast: Evaluation) -> str:
     """Say which part of the burst is counted where it is not all of it, after a comma."""
     return "" if forecast.window_s is None else f", from {window(forecast)},"
 
 
-def _counted(forecast: Forecast) -> str:
+def _counted(forecast: Evaluation) -> str:
     response = forecast.detector.response
     losses = [] if _is_unity(response.efficiency) else ["efficiency"]
     losses += [] if _is_unity(response.true_efficiency) else ["efficiency in true energy"]
@@ -61,7 +58,7 @@ def _counted(forecast: Forecast) -> str:
     return f"Counted means: {threshold(forecast)}{kept}."
 
 
-def threshold(forecast: Forecast) -> str:
+def threshold(forecast: Evaluation) -> str:
     """Say above which energy, and of which kind, an event must be observed."""
     response = forecast.detector.response
     lowest = max(response.threshold_mev, forecast.energy_above_mev or 0.0)
@@ -110,7 +107,7 @@ def curve(efficiency: Curve) -> str:
     return f"{low} at {first:g} MeV to {high} at {last:g} MeV"
 
 
-def assumptions(forecast: Forecast) -> Iterator[Assumption]:
+def assumptions(forecast: Evaluation) -> Iterator[Assumption]:
     """List every assumption: what, its value, and whether it was given or is a default."""
     yield from _of_detector(forecast)
     yield "burst", forecast.burst.title, forecast.burst.origin
@@ -124,7 +121,7 @@ def assumptions(forecast: Forecast) -> Iterator[Assumption]:
         yield "only above", f"{forecast.energy_above_mev:g} MeV observed", "given"
 
 
-def _of_detector(forecast: Forecast) -> Iterator[Assumption]:
+def _of_detector(forecast: Evaluation) -> Iterator[Assumption]:
     detector = forecast.detector
     response, given = detector.response, detector.stated
     for volume in detector.volumes:
@@ -153,14 +150,14 @@ def _of_detector(forecast: Forecast) -> Iterator[Assumption]:
         yield f"error of {name}", percent(error), detector.origin if error else "default"
 
 
-def largest_sources(forecast: Forecast, most: int) -> list[tuple[str, tuple[Reference, ...]]]:
+def largest_sources(forecast: Evaluation, most: int) -> list[tuple[str, tuple[Reference, ...]]]:
     """Sources of the interactions that count most, the largest first."""
     ranked = sorted(zip(forecast.counted, forecast.keys, strict=True), key=lambda pair: -pair[0])
     keys = [key for count, key in ranked[:most] if count > 0]
     return [(key, interactions.by_key(key).references) for key in keys]
 
 
-def command(forecast: Forecast) -> str:
+def command(forecast: Evaluation) -> str:
     """Give the shell command that prints the page again, or say what the shell cannot be told."""
     in_python = list(_beyond_the_shell(forecast))
     if in_python:
@@ -175,7 +172,7 @@ def command(forecast: Forecast) -> str:
     return shlex.join(words)
 
 
-def _beyond_the_shell(forecast: Forecast) -> Iterator[str]:
+def _beyond_the_shell(forecast: Evaluation) -> Iterator[str]:
     """List what went into a forecast that no option of the shell can say."""
     detector, burst = forecast.detector, forecast.burst
     if detector.origin not in gallery.names() and not detector.origin.endswith(".toml"):
