@@ -12,6 +12,8 @@ from tenkpc import units
 from tenkpc.errors import DimensionError, InputError
 
 BIRKS_PER_LENGTH, BIRKS_PER_AREA = BIRKS_UNITS = ("cm/MeV", "g/cm^2/MeV")
+# scintillators have about 0.01 (common practice); ten times as much is a slip of a unit
+LARGEST_BIRKS = 0.1
 
 
 class _Converted:
@@ -96,8 +98,8 @@ class BirksConstant(_Converted):
                 number = units.to_float(value, unit, "", self.example)
             except DimensionError:
                 continue
-            if number < 0:
-                message = f"expected at least 0 {unit}; found {value!r}"
+            if not 0 <= number <= LARGEST_BIRKS:
+                message = f"expected 0 to {LARGEST_BIRKS:g} {unit}; found {value!r}"
                 raise InputError(message)
             return number, unit
         message = f"expected a value in {' or '.join(BIRKS_UNITS)}; found {value!r}"

@@ -40,8 +40,8 @@ TAIL = 1e-4
 DEPTH = 3e-4
 # factors are drawn where a bin holds at least this share of the counts
 MATTERS = 1e-3
-# where curves are named, s after bounce: on the plateau of accretion
-NAMES_AT_S = 0.1
+# where curves are named in turn, s after bounce: on the plateau of accretion
+NAMES_AT_S = (0.12, 0.04)
 # edges of the light curve, s: fine at the peak of the electron neutrinos, coarse in the tail
 TIME_EDGES_S = np.unique(
     np.round(
@@ -279,14 +279,21 @@ def _pseudo_burst(ax: Axes, expected: Floats, edges: Floats, seed: int) -> None:
 
 
 def _name_curves(ax: Axes, names: Sequence[str], curves: Sequence[Floats], edges: Floats) -> None:
-    """Name each curve on the plateau, on the side where there is more room."""
+    """Name each curve on the side where there is more room, neighbours at different times."""
     middle = 0.5 * (edges[:-1] + edges[1:])
-    at = int(np.argmin(np.abs(middle - NAMES_AT_S)))
-    low, high = np.log(ax.get_ylim())
-    heights = np.log(np.maximum([curve[at] for curve in curves], np.exp(low)))
-    for name, height, curve in zip(names, heights, curves, strict=True):
-        above = np.min([h for h in heights if h > height] + [high]) - height
-        below = height - np.max([h for h in heights if h < height] + [low])
+    low, high = ax.get_ylim()
+    places = [int(np.argmin(np.abs(middle - time))) for time in NAMES_AT_S]
+    ranks = np.argsort(np.argsort([-curve[places[0]] for curve in curves]))
+    for name, curve, rank in zip(names, curves, ranks, strict=True):
+        at = places[rank % len(places)]
+        if curve[at] <= low:
+            at = int(np.argmax(curve))
+        if not curve[at] > low:
+            continue
+        others = np.log([max(other[at], low) for other in curves if other is not curve])
+        height = np.log(curve[at])
+        above = np.min([*others[others > height], np.log(high)]) - height
+        below = height - np.max([*others[others < height], np.log(low)])
         up = above >= below
         ax.annotate(
             name,
