@@ -86,7 +86,7 @@ def test_new_writes_a_file_to_begin_with(tmp_path, kind):
     path.write_text(text + "# mine")
     done = run("new", kind, str(path))
     assert done.exit_code == 2
-    assert "left as it is" in done.stderr
+    assert "left as it is" in done.output
     assert path.read_text(encoding="utf-8").endswith("# mine")
 
 

@@ -81,6 +81,7 @@ def test_other_volumes_are_one_change():
     table = product(FIRST, second)
     assert list(table.index) == ["volume", "interactions", "interactions"]
     assert table["factor"].iloc[0] == pytest.approx(0.5)
+    assert list(product(second, FIRST).index) == ["volume", "interactions", "interactions"]
 
 
 def test_tables_beside_the_files_come_along(tmp_path):
@@ -90,6 +91,14 @@ def test_tables_beside_the_files_come_along(tmp_path):
     second = Forecast(Detector.parse(text, folder=str(tmp_path)), ORDINARY, distance="10 kpc")
     assert list(product(FIRST, second).index) == ["response.efficiency"]
     assert list(product(second, FIRST).index) == ["response.efficiency"]
+    third = Forecast(
+        Detector.parse(text.replace("0.25 MeV", "0.5 MeV"), folder=str(tmp_path)),
+        ORDINARY,
+        distance="10 kpc",
+    )
+    # the table is needed after another key has changed, and the folder is gone by then
+    (tmp_path / "eff.csv").unlink()
+    assert list(product(FIRST, third).index) == ["response.threshold", "response.efficiency"]
 
 
 def test_nothing_has_no_factors():

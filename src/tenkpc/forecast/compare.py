@@ -90,18 +90,18 @@ def _detectors(first: Detector, second: Detector) -> Iterator[tuple[str, str, st
     """
     if first == second:
         return
-    tables = {**dict(first.document.tables), **dict(second.document.tables)}
-    whole = replace(first.document, tables=tuple(tables.items()))
+    known = tuple({**dict(first.document.tables), **dict(second.document.tables)}.items())
+    whole = replace(first.document, tables=known)
     ours, theirs = first.document.content(), second.document.content()
     for path in _differing(ours, theirs):
-        before, after = _at(ours, path), _at(theirs, path)
+        table, before, after = str(path[0]), _at(ours, path), _at(theirs, path)
         ours = _changed(ours, path, after)
         try:
-            made = Detector.of_document(whole.changed({str(path[0]): ours[str(path[0])]}))
+            made = Detector.of_document(whole.changed({table: ours.get(table, {})}))
         except InputError:
             yield "detector", first.title, second.title, second
             return
-        whole = made.document
+        whole = replace(made.document, tables=known)
         yield textfiles.dotted(path, theirs), _shown(before), _shown(after), made
 
 

@@ -7,6 +7,7 @@ still reads.
 
 from __future__ import annotations
 
+import math
 import textwrap
 from collections.abc import Sequence
 from typing import TYPE_CHECKING, Any
@@ -14,6 +15,7 @@ from typing import TYPE_CHECKING, Any
 import numpy as np
 from numpy.typing import NDArray
 
+from tenkpc.errors import InputError
 from tenkpc.forecast import words
 from tenkpc.forecast.forecast import Forecast
 from tenkpc.source.burst import Burst
@@ -29,8 +31,14 @@ FOOT_SIZE = 7
 FOOT_COLUMNS = 104
 LABEL_SIZE = 8
 WIDTH_IN = 6.4
-# names of curves are at least so far apart, as a share of the panel's height
-APART = 0.065
+# names below each other are at least so far apart, in units of their size
+APART = 1.6
+# so many curves or areas are named, the others are drawn and named as one lot
+MOST_NAMES = 6
+# from the right edge of the axes to the names there, points
+TO_NAMES = 12
+# depth of logarithmic pictures, as a share of the peak: the rarest kinds are to be seen
+DEPTH = 3e-4
 # the axis of time is linear up to here, s
 LINEAR_S = 0.1
 TIME_TICKS_S = (0, 0.02, 0.04, 0.06, 0.08, 0.1, 0.3, 1, 3, 10, 30)
@@ -66,6 +74,21 @@ def panels(
     return list(axes[:, 0])
 
 
+def given_axes(ax: Any, count: int, name: str) -> list[Axes]:
+    """Give the axes that a picture of several panels was given, as a list.
+
+    Raises
+    ------
+    InputError
+        where there are more or fewer of them than panels.
+    """
+    axes = list(np.ravel(ax))
+    if len(axes) != count:
+        message = f"ax: {name} draws on {count} axes, found {len(axes)}"
+        raise InputError(message)
+    return axes
+
+
 def halo() -> list[Any]:
     """Give a white rim that keeps a name readable on top of lines."""
     from matplotlib import patheffects
@@ -74,15 +97,17 @@ def halo() -> list[Any]:
 
 
 def wrapped(line: str) -> str:
-    """Break a foot line that is too long for a picture."""
-    return textwrap.fill(line, FOOT_COLUMNS)
+    """Break a foot line that is too long for a picture into lines of about one length."""
+    lines = math.ceil(len(line) / FOOT_COLUMNS)
+    even = len(line) / lines + 12 if lines > 1 else FOOT_COLUMNS
+    return textwrap.fill(line, min(int(even), FOOT_COLUMNS))
 
 
 def foot(ax: Axes, line: str, down: float = -38) -> None:
-    """Write what was assumed as a small line below the axis, or two where it is long."""
+    """Write what was assumed as a small line below the axis, or more where it is long."""
     offset: dict[str, Any] = {"xytext": (0, down), "textcoords": "offset points", "va": "top"}
     ax.annotate(
-        textwrap.fill(line, FOOT_COLUMNS),
+        wrapped(line),
         (0, 0),
         xycoords="axes fraction",
         fontsize=FOOT_SIZE,
@@ -92,10 +117,11 @@ def foot(ax: Axes, line: str, down: float = -38) -> None:
 
 
 def assumed(forecast: Forecast) -> str:
-    """Say detector, burst, distance and conversion in one line."""
+    """Say detector, burst, distance, conversion and window in one line."""
+    part = words.window_clause(forecast).rstrip(",")
     return (
         f"{forecast.detector.title}, “{forecast.burst.title}” at "
-        f"{words.distance(forecast.distance_kpc)}, {forecast.conversion.describe()}"
+        f"{words.distance(forecast.distance_kpc)}, {forecast.conversion.describe()}{part}"
     )
 
 
@@ -105,24 +131,54 @@ def in_all(burst: Burst) -> str:
 
 
 def apart(heights: Floats, least: float) -> Floats:
-    """Move heights apart to at least a distance, in order, around where they were."""
-    order = np.argsort(heights)
-    moved = heights[order].astype(float)
-    for place in range(1, len(moved)):
-        moved[place] = max(moved[place], moved[place - 1] + least)
-    if len(moved):
-        moved -= np.mean(moved - heights[order])
-        moved += max(0.0, -moved[0]) - max(0.0, moved[-1] - 1.0)
-    result = np.empty_like(moved)
-    result[order] = moved
+    """Move heights apart to at least a distance, in order, as little as can be, and into [0, 1].
+
+    The moves are least in the sum of their squares: less the distance times its rank, a height
+    may not fall behind the one below it, which is isotonic regression in its min-max form.
+    """
+    order = np.argsort(heights, kind="stable")
+    steps = least * np.arange(len(order))
+    wanted = np.asarray(heights, dtype=float)[order] - steps
+    n = len(wanted)
+    settled = [
+        max(min(wanted[j : k + 1].mean() for k in range(i, n)) for j in range(i + 1))
+        for i in range(n)
+    ]
+    result = np.empty(n)
+    result[order] = np.clip(settled, 0.0, max(0.0, 1.0 - least * (n - 1))) + steps
     return result
 
 
-def names_at_right(ax: Axes, names: Sequence[str], heights: Floats, size: float) -> None:
-    """Name curves beside their right ends, at heights from 0 to 1 that do not collide."""
-    offset: dict[str, Any] = {"xytext": (4, 0), "textcoords": "offset points", "va": "center"}
-    for name, height in zip(names, apart(heights, APART * size / LABEL_SIZE), strict=True):
-        ax.annotate(name, (1.0, height), xycoords="axes fraction", fontsize=size, **offset)
+def spacing(ax: Axes, size: float) -> float:
+    """Distance of names of a size below each other, as a share of the height of the axes."""
+    return float(APART * size * ax.get_figure(root=True).dpi / 72 / ax.bbox.height)
+
+
+def names_at_right(
+    ax: Axes, names: Sequence[str], ends: Sequence[tuple[float, float]], size: float = LABEL_SIZE
+) -> None:
+    """Name curves at the right of the axes, each with a thin line to where its curve ends.
+
+    Ends are in units of the data; the vertical scale must have been set before.
+    """
+    from matplotlib.transforms import offset_copy
+
+    low, high = ax.get_ylim()
+    inside = [(x, float(np.clip(y, low, high))) for x, y in ends]
+    shares = ax.transAxes.inverted().transform(ax.transData.transform(inside))[:, 1]
+    beside = offset_copy(ax.transAxes, ax.figure, TO_NAMES, 0, "points")
+    line = {"arrowstyle": "-", "linewidth": 0.5, "color": "0.4", "relpos": (0, 0.5)}
+    for name, end, height in zip(names, inside, apart(shares, spacing(ax, size)), strict=True):
+        ax.annotate(
+            name,
+            end,
+            xytext=(1.0, height),
+            textcoords=beside,
+            fontsize=size,
+            va="center",
+            arrowprops={**line, "patchA": None, "shrinkA": 1, "shrinkB": 0},
+            annotation_clip=False,
+        )
 
 
 def names_in_column(
@@ -152,7 +208,7 @@ def names_in_column(
             textcoords="axes fraction",
             fontsize=LABEL_SIZE,
             va="center",
-            arrowprops={**line, "shrinkB": 0},
+            arrowprops={**line, "patchA": None, "shrinkB": 0},
             path_effects=halo(),
         )
         ax.plot(*point, marker="o", markersize=1.8, color="0.2")

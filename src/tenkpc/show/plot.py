@@ -6,7 +6,8 @@ shows a window. There is no box of keys: names stand beside their curves.
 
 from __future__ import annotations
 
-from tenkpc.show.counts import light_curve, spectrum
+from tenkpc.show.counts import spectrum
+from tenkpc.show.rates import light_curve
 from tenkpc.show.reach import counts_versus_distance, interaction_probability
 from tenkpc.show.source import burst, fluence
 
