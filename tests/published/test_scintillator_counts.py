@@ -228,3 +228,40 @@ def test_the_slow_calculation_of_carbon():
         mine = found.xs(key, level="interaction")
         mine = mine if state is None else mine.xs(state, level="final_state")
         assert mine.sum() == pytest.approx(expected, rel=5e-3), (key, state)
+
+
+# the same calculation for recoil protons: without threshold, above 0.2 MeV of light with Birks'
+# constants of 0.0096 and 0.015 cm/MeV at 0.78 g/cm³, of one kind each
+PROTONS = {
+    "nu_e": (67.3691, 6.8533, 3.9338),
+    "anti_nu_e": (71.4249, 11.6645, 7.4099),
+    "nu_x": (88.9476, 23.2667, 16.3591),
+    "anti_nu_x": (80.2360, 19.3449, 13.3854),
+}
+
+
+@pytest.mark.parametrize(
+    ("column", "birks", "threshold"),
+    [(0, 0.0096, ""), (1, 0.0096, "0.2 MeV"), (2, 0.015, "0.2 MeV")],
+)
+def test_the_slow_calculation_of_protons(column, birks, threshold):
+    """Rows by species to 5e-4: the slow one takes all hydrogen as protons."""
+    made = detector("1 kt", 'formula = "CH2"', birks=birks, density=0.78, threshold=threshold)
+    rows = forecast(made, Burst.preset("equipartition")).breakdown["counted"]
+    found = rows.xs("proton-scattering", level="interaction").groupby(level="species").sum()
+    for species, expected in PROTONS.items():
+        kinds = 2 if species.endswith("nu_x") else 1
+        assert found[species] / kinds == pytest.approx(expected[column], rel=5e-4)
+
+
+def test_the_slow_calculation_of_strangeness():
+    """All recoils with Δs = -0.035 lie between the totals for 0 and for -0.036, near the second."""
+    made = detector("1 kt", 'formula = "CH2"', birks=0.0096, density=0.78)
+    option = {"proton-scattering": "with-strangeness"}
+    burst = Burst.preset("equipartition")
+    strange = Forecast(
+        made, burst, distance="10 kpc", conversion=Unconverted(), interactions=option
+    )
+    found = strange.counts.loc["proton-scattering", "counted"]
+    expected = 477.161 + (504.467 - 477.161) * 35 / 36
+    assert found == pytest.approx(expected, rel=5e-4)

@@ -37,6 +37,12 @@ def words_on():
 
 
 @pytest.fixture
+def heights():
+    """Give the heights of everything that is drawn as steps."""
+    return lambda axes: [p.get_data().values for p in axes.patches if hasattr(p, "get_data")]
+
+
+@pytest.fixture
 def check_looks():
     """What holds for every picture: no box of keys, names inside the figure and readable."""
 

@@ -6,7 +6,7 @@ import numpy as np
 import pytest
 from matplotlib import pyplot as plt
 
-from tenkpc import Burst
+from tenkpc import Adiabatic, Burst
 from tenkpc.errors import InputError
 from tenkpc.show import plot
 from tenkpc.species import MULTIPLICITY
@@ -19,9 +19,9 @@ def test_every_preset_in_time_is_drawn(name, words_on, check_looks):
     """Species, phases, pinchings and shares are named, and the whole energy at the foot."""
     axes = plot.burst(Burst.preset(name))
     words = words_on(axes.figure)
-    assert {"νe", "νx, each of two", "10%", "90%"} < set(words)
-    assert any("α = " in text for text in words)
-    assert any("erg in all" in text for text in words)
+    assert {"νe", "νx, both kinds", "10%", "90%"} < set(words)
+    assert f"ν̄e, α = {Burst.preset(name).summary().pinching[1]:.1f}" in words
+    assert any("erg in all" in text.replace("\n", " ") for text in words)
     check_looks(axes.figure)
 
 
@@ -32,6 +32,18 @@ def test_areas_are_luminosities_of_all_kinds():
     times, tops = max((line.get_data() for line in axes.lines), key=lambda d: np.max(d[1]))
     expected = MULTIPLICITY @ burst.luminosity(times) / 1e52
     assert tops == pytest.approx(expected)
+
+
+def test_widths_of_the_lines_are_a_quarter_of_the_spectra():
+    """The band of the electron antineutrinos, read back in the middle of the accretion."""
+    burst = Burst.preset("ordinary-collapse")
+    lower = plot.burst(burst).figure.axes[1]
+    corners = lower.collections[1].get_paths()[0].vertices
+    times = np.unique(corners[:, 0])
+    at = times[np.argmin(np.abs(times - 0.2))]
+    ends = np.unique(corners[corners[:, 0] == at, 1])
+    assert ends.mean() == pytest.approx(burst.mean_energy(at)[1, 0])
+    assert np.ptp(ends) == pytest.approx(0.25 * burst.energy_width(at)[1, 0])
 
 
 def test_triangles_stand_where_shares_are_emitted():
@@ -63,11 +75,19 @@ def test_fluences_are_those_of_the_forecast(hall, words_on, check_looks):
     axes = plot.fluence(hall)
     panels = axes.figure.axes
     assert len(panels) == 4
+    inverted = hall.converted(Adiabatic("inverted"))
     for place, panel in enumerate(panels):
         energy, heavy = panel.lines[0].get_data()
         assert heavy == pytest.approx(hall.fluence(energy)[place])
+        lines = [line.get_ydata() for line in panel.lines]
+        assert any(np.array_equal(line, inverted.fluence(energy)[place]) for line in lines)
+        grey = panel.collections[0].get_paths()[0].vertices[:, 1].max()
+        assert grey == pytest.approx(hall.fluence(energy, converted=False)[place].max())
     words = words_on(axes.figure)
-    assert {"arriving", "unconverted", "grey: as emitted"} < set(words)
+    named = {"arriving", "inverted ordering", "equilibrated", "grey: emitted, unconverted"}
+    assert named < set(words)
+    assert "ONE kind" in panels[0].get_ylabel()
+    assert "10 kpc" in axes.figure.get_supxlabel()
     check_looks(axes.figure)
 
 
@@ -86,5 +106,14 @@ def test_pictures_go_on_axes_of_the_users_own(hall):
     _, four = plt.subplots(2, 2)
     before = plt.get_fignums()
     assert plot.burst(hall.burst, ax=two) is two[0]
-    assert plot.fluence(hall, ax=list(four.ravel())) is four[0, 0]
+    assert plot.fluence(hall, ax=four) is four[0, 0]
     assert plt.get_fignums() == before
+
+
+def test_too_few_axes_are_refused(hall):
+    """A burst needs two, fluences four."""
+    _, one = plt.subplots()
+    with pytest.raises(InputError, match="draws on 2 axes, found 1"):
+        plot.burst(hall.burst, ax=one)
+    with pytest.raises(InputError, match="draws on 4 axes, found 1"):
+        plot.fluence(hall, ax=one)

@@ -116,12 +116,13 @@ def foot(ax: Axes, line: str, down: float = -38) -> None:
     )
 
 
-def assumed(forecast: Forecast) -> str:
+def assumed(forecast: Forecast, *, distance: bool = True) -> str:
     """Say detector, burst, distance, conversion and window in one line."""
+    where = f" at {words.distance(forecast.distance_kpc)}" if distance else ""
     part = words.window_clause(forecast).rstrip(",")
     return (
-        f"{forecast.detector.title}, “{forecast.burst.title}” at "
-        f"{words.distance(forecast.distance_kpc)}, {forecast.conversion.describe()}{part}"
+        f"{forecast.detector.title}, “{forecast.burst.title}”{where}, "
+        f"{forecast.conversion.describe()}{part}"
     )
 
 
@@ -151,7 +152,7 @@ def apart(heights: Floats, least: float) -> Floats:
 
 def spacing(ax: Axes, size: float) -> float:
     """Distance of names of a size below each other, as a share of the height of the axes."""
-    return float(APART * size * ax.get_figure(root=True).dpi / 72 / ax.bbox.height)
+    return float(APART * size * ax.figure.dpi / 72 / ax.bbox.height)
 
 
 def names_at_right(
@@ -161,13 +162,15 @@ def names_at_right(
 
     Ends are in units of the data; the vertical scale must have been set before.
     """
-    from matplotlib.transforms import offset_copy
+    if not names:
+        return
+    from matplotlib.transforms import ScaledTranslation
 
     low, high = ax.get_ylim()
     inside = [(x, float(np.clip(y, low, high))) for x, y in ends]
     shares = ax.transAxes.inverted().transform(ax.transData.transform(inside))[:, 1]
-    beside = offset_copy(ax.transAxes, ax.figure, TO_NAMES, 0, "points")
-    line = {"arrowstyle": "-", "linewidth": 0.5, "color": "0.4", "relpos": (0, 0.5)}
+    beside = ax.transAxes + ScaledTranslation(TO_NAMES / 72, 0, ax.figure.dpi_scale_trans)
+    line = {"arrowstyle": "-", "linewidth": 0.7, "linestyle": ":", "color": "0.3"}
     for name, end, height in zip(names, inside, apart(shares, spacing(ax, size)), strict=True):
         ax.annotate(
             name,
@@ -176,7 +179,7 @@ def names_at_right(
             textcoords=beside,
             fontsize=size,
             va="center",
-            arrowprops={**line, "patchA": None, "shrinkA": 1, "shrinkB": 0},
+            arrowprops={**line, "relpos": (0, 0.5), "patchA": None, "shrinkA": 1, "shrinkB": 0},
             annotation_clip=False,
         )
 

@@ -38,15 +38,14 @@ def ranked(frame: DataFrame) -> tuple[list[str], Floats]:
     """Names of what is seen and its counts by bin, the largest first, the smallest as one."""
     columns = [name for name in frame.columns[1:] if name != "background"]
     sums = frame[columns].sum().sort_values(ascending=False)
-    ranked = [str(name) for name in sums[sums > 0].index]
-    if not ranked:
+    largest = [str(name) for name in sums[sums > 0].index]
+    if not largest:
         return ["nothing is counted"], np.zeros((1, len(frame)))
-    most = MOST_NAMES if len(ranked) > MOST_NAMES else len(ranked)
-    parts = [frame[name].to_numpy() for name in ranked[:most]]
-    names = ranked[:most]
-    if ranked[most:]:
-        parts.append(frame[ranked[most:]].sum(axis=1).to_numpy())
-        names.append(f"{len(ranked) - most} smaller")
+    names, rest = largest[:MOST_NAMES], largest[MOST_NAMES:]
+    parts = [frame[name].to_numpy() for name in names]
+    if rest:
+        parts.append(frame[rest].sum(axis=1).to_numpy())
+        names.append(f"{len(rest)} smaller")
     return names, np.array(parts)
 
 

@@ -32,7 +32,7 @@ if TYPE_CHECKING:
 Floats = NDArray[np.float64]
 
 # where curves are named in turn, s after bounce: on the plateau of accretion
-NAMES_AT_S = (0.12, 0.04)
+NAMES_AT_S = (0.2, 0.06)
 # edges of the light curve, s: fine at the peak of the electron neutrinos, coarse in the tail
 TIME_EDGES_S = np.unique(
     np.round(

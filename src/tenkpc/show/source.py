@@ -15,14 +15,17 @@ from tenkpc.show.marks import (
     FOOT_SIZE,
     LABEL_SIZE,
     WIDTH_IN,
+    apart,
     assumed,
     colour,
     foot,
+    given_axes,
     halo,
     in_all,
     names_at_right,
     names_in_column,
     panels,
+    spacing,
     stretched_time,
     weight,
     wrapped,
@@ -35,6 +38,7 @@ if TYPE_CHECKING:
     from matplotlib.axes import Axes
 
 Floats = NDArray[np.float64]
+Point = tuple[float, float]
 
 # times drawn, s: fine at the first peak, then evenly in ratio
 TIMES_S = np.concatenate([np.linspace(-0.02, 0.1, 481), np.geomspace(0.1003, 20.0, 600)])
@@ -42,6 +46,8 @@ TIMES_S = np.concatenate([np.linspace(-0.02, 0.1, 481), np.geomspace(0.1003, 20.
 LINE_SHARE = 0.25
 SHARES = (0.1, 0.5, 0.9)
 HIGHEST_MEV = 60.0
+# areas are named where they are thickest, but not within the first peak, s
+NAMES_FROM_S = 0.05
 
 
 def burst(burst: Burst, *, other: Burst | None = None, ax: Sequence[Axes] | None = None) -> Axes:
@@ -54,38 +60,40 @@ def burst(burst: Burst, *, other: Burst | None = None, ax: Sequence[Axes] | None
     other
         a second one, drawn as thin dashed lines.
     ax
-        two axes to draw on; without, a new figure.
+        two axes to draw on, the upper one first; without, a new figure.
 
     Returns
     -------
     Axes
-        the upper axes. Areas are those of ALL kinds of a species (two for ν_x and ν̄_x each);
-        triangles at the bottom mark when 10, 50 and 90 % of the energy is emitted, numbers at the
-        right are effective pinchings of the whole burst.
+        the upper axes. Areas are those of ALL kinds of a species (two for ν_x and ν̄_x each), so
+        that the top of the stack is the luminosity of all six; triangles at the bottom mark when
+        10, 50 and 90 % of the energy is emitted, numbers at the right are effective pinchings of
+        the whole burst.
 
     Raises
     ------
     InputError
-        where a burst has no time profile.
+        where a burst has no time profile, or there are not two axes.
     """
     for made in filter(None, (burst, other)):
         if made.time_integrated:
             message = f"burst: {made.title!r} is integrated over time and has no time profile"
             raise InputError(message)
-    if ax is None:
-        upper, lower = panels(None, (3, 2), tall=5.6)
-    else:
-        upper, lower = ax
+    upper, lower = (
+        panels(None, (3, 2), tall=5.6) if ax is None else given_axes(ax, 2, "a picture of a burst")
+    )
     times = TIMES_S[(burst.start_s <= TIMES_S) & (burst.end_s >= TIMES_S)]
     _luminosities(upper, burst, times)
-    _mean_energies(lower, burst, times)
+    names, ends = _mean_energies(lower, burst, times)
     if other is not None:
         _second(upper, lower, other, times)
+    names_at_right(lower, names, ends)
     _running_share(upper, burst)
     stretched_time([upper, lower], times[0], times[-1])
     _phases(upper, burst, times)
-    seconds = f", dashed: “{other.title}”" if other is not None else ""
-    foot(lower, f"“{burst.title}”{seconds}; {in_all(burst)}")
+    second = f"; dashed: “{other.title}”, all six kinds together above" if other else ""
+    widths = "widths of lines: a quarter of the spectrum's standard deviation"
+    foot(lower, f"“{burst.title}”, {in_all(burst)}; {widths}; α: pinching in all{second}")
     return upper
 
 
@@ -97,13 +105,18 @@ def fluence(forecast: Forecast, *, ax: Sequence[Axes] | None = None) -> Axes:
     forecast
         the forecast: burst, distance, conversion and window of time.
     ax
-        four axes to draw on; without, a new figure.
+        four axes to draw on, one for each species; without, a new figure of two by two.
 
     Returns
     -------
     Axes
         the first of the axes. Fluences are of ONE neutrino kind; the emitted ones, spread over
         the same sphere, are the grey areas; other conversions are thin lines.
+
+    Raises
+    ------
+    InputError
+        where there are not four axes.
     """
     from matplotlib import pyplot as plt
 
@@ -111,79 +124,106 @@ def fluence(forecast: Forecast, *, ax: Sequence[Axes] | None = None) -> Axes:
     if ax is None:
         layout: dict[str, Any] = {"figsize": (WIDTH_IN, 5.2), "layout": "constrained"}
         figure, grid = plt.subplots(2, 2, sharex=True, sharey=True, **layout)
-        ax = list(grid.ravel())
+        axes: list[Axes] = list(grid.ravel())
         figure.supxlabel(wrapped(line), x=0.02, ha="left", fontsize=FOOT_SIZE, color="0.25")
+    else:
+        axes = given_axes(ax, len(SPECIES), "a picture of fluences")
+        foot(axes[2], line)
     energy = np.linspace(0.05, HIGHEST_MEV, 400)
-    emitted, arriving = forecast.fluence(energy, converted=False), forecast.fluence(energy)
-    lines = [(name, case.fluence(energy)) for name, case in other_conversions(forecast)]
-    for place, (axes, species) in enumerate(zip(ax, SPECIES, strict=True)):
-        axes.fill_between(energy, emitted[place], color="0.8", linewidth=0)
-        axes.plot(energy, arriving[place], color=colour(0), linewidth=weight(0))
-        for rank, (_, other) in enumerate(lines):
-            axes.plot(energy, other[place], color=colour(rank + 1), linewidth=0.9)
-        axes.annotate(SYMBOLS[species], (0.95, 0.9), xycoords="axes fraction", ha="right", va="top")
-        axes.set_ylim(bottom=0)
-        axes.set_xlim(0, HIGHEST_MEV)
-    _name_cases(ax[1], energy, [("arriving", arriving[1]), *((n, o[1]) for n, o in lines)])
-    for axes in ax[2:]:
-        axes.set_xlabel("neutrino energy [MeV]")
-    for axes in ax[::2]:
-        axes.set_ylabel("of one kind [cm⁻² MeV⁻¹]")
-    words: dict[str, Any] = {"xycoords": "axes fraction", "ha": "right", "fontsize": FOOT_SIZE}
-    ax[0].annotate("grey: as emitted", (0.95, 0.7), **words)
-    return ax[0]
+    cases = [("arriving", forecast.fluence(energy))]
+    cases += [(name, case.fluence(energy)) for name, case in _thin(forecast)]
+    emitted = forecast.fluence(energy, converted=False)
+    for place, panel in enumerate(axes):
+        _fluences(panel, SPECIES[place], energy, emitted[place], [c[place] for _, c in cases])
+    for panel in axes[2:]:
+        panel.set_xlabel("neutrino energy [MeV]")
+    for panel in axes[::2]:
+        panel.set_ylabel("fluence of ONE kind [cm⁻² MeV⁻¹]", fontsize=LABEL_SIZE)
+    named = [("grey: emitted, unconverted", emitted), *cases]
+    clearest = _clearest([curves for _, curves in named])
+    _name_cases(axes[clearest], energy, [(name, curves[clearest]) for name, curves in named])
+    return axes[0]
+
+
+def _thin(forecast: Forecast) -> list[tuple[str, Forecast]]:
+    """Other conversions that are drawn as lines: what is not converted is the grey area."""
+    return [(name, case) for name, case in other_conversions(forecast) if name != "unconverted"]
+
+
+def _fluences(
+    ax: Axes, species: str, energy: Floats, emitted: Floats, curves: Sequence[Floats]
+) -> None:
+    """Draw the panel of one species: emitted in grey, arriving in front, others as thin lines."""
+    ax.fill_between(energy, emitted, color="0.8", linewidth=0)
+    for rank, curve in enumerate(curves):
+        heavy, front = (weight(0), 3) if rank == 0 else (0.9, 4)
+        ax.plot(energy, curve, color=colour(rank), linewidth=heavy, zorder=front)
+    ax.annotate(SYMBOLS[species], (0.95, 0.5), xycoords="axes fraction", ha="right")
+    ax.set_ylim(bottom=0)
+    ax.set_xlim(0, HIGHEST_MEV)
 
 
 def _luminosities(ax: Axes, burst: Burst, times: Floats) -> None:
     """Stack the luminosities of all kinds of each species, 1e52 erg/s."""
     values = burst.luminosity(times) * MULTIPLICITY[:, None] / 1e52
-    base, heights = np.zeros(len(times)), []
+    base, middles = np.zeros(len(times)), []
     for rank, part in enumerate(values):
         ax.fill_between(times, base, base + part, color=colour(rank), alpha=0.8, linewidth=0)
         ax.plot(times, base + part, color="0.15", linewidth=weight(rank) / 2)
         base = base + part
-        heights.append(base - 0.5 * part)
+        middles.append(base - 0.5 * part)
     ax.set_ylim(0, base.max() * 1.08)
-    ax.set_ylabel("luminosity [10⁵² erg/s]")
-    at = int(np.argmin(np.abs(times - 0.15)))
-    counts = {1.0: "", 2.0: ", each of two"}
-    names = [
-        f"{SYMBOLS[name]}{counts[float(kinds)]}"
-        for name, kinds in zip(SPECIES, MULTIPLICITY, strict=True)
-    ]
+    ax.set_ylabel("luminosity of all six kinds [10⁵² erg/s]")
+    _name_areas(ax, times, values, np.array(middles))
+
+
+def _name_areas(ax: Axes, times: Floats, values: Floats, middles: Floats) -> None:
+    """Name each area where it is thickest, and none that is empty."""
+    words = {1.0: "", 2.0: ", both kinds"}
+    late = times >= min(NAMES_FROM_S, times[-1])
+    some = [rank for rank, part in enumerate(values) if part[late].any()]
+    places = [int(np.argmax(np.where(late, values[rank], -1.0))) for rank in some]
+    top = ax.get_ylim()[1]
+    heights = np.array([middles[rank, at] / top for rank, at in zip(some, places, strict=True)])
     style: dict[str, Any] = {"fontsize": LABEL_SIZE, "va": "center", "path_effects": halo()}
-    for name, height in zip(names, heights, strict=True):
-        ax.text(0.15, height[at], name, **style)
+    heights = apart(heights, 0.75 * spacing(ax, LABEL_SIZE))
+    for rank, at, height in zip(some, places, heights, strict=True):
+        side = "right" if times[at] > 0.9 * times[-1] else "center"
+        name = f"{SYMBOLS[SPECIES[rank]]}{words[float(MULTIPLICITY[rank])]}"
+        ax.text(times[at], height * top, name, ha=side, **style)
 
 
-def _mean_energies(ax: Axes, burst: Burst, times: Floats) -> None:
-    """Draw mean energies as lines whose width is a share of the spectrum's own."""
+def _mean_energies(ax: Axes, burst: Burst, times: Floats) -> tuple[list[str], list[Point]]:
+    """Draw mean energies as lines whose width is a share of the spectrum's own.
+
+    Their names and ends are given back, to be written once the axes have their last scale.
+    """
     mean, width = burst.mean_energy(times), burst.energy_width(times)
     pinching = burst.summary().pinching
     names, ends = [], []
     for rank, species in enumerate(SPECIES):
-        if species == "anti_nu_x" and np.allclose(mean[rank], mean[rank - 1], equal_nan=True):
+        middle, half = mean[rank], 0.5 * LINE_SHARE * width[rank]
+        known = np.flatnonzero(np.isfinite(middle))
+        if not known.size or (species == "anti_nu_x" and _alike(mean)):
             continue
-        half = 0.5 * LINE_SHARE * width[rank]
-        middle, shade = mean[rank], colour(rank)
+        shade = colour(rank)
         ax.fill_between(times, middle - half, middle + half, color=shade, alpha=0.6, linewidth=0)
         ax.plot(times, middle, color="0.15", linewidth=0.6)
-        known = middle[np.isfinite(middle)]
         names.append(f"{_both(species, mean)}, α = {pinching[rank]:.1f}")
-        ends.append(known[-1] if known.size else 0.0)
-    low, high = np.nanmin(mean) * 0.85, np.nanmax(mean) * 1.12
-    ax.set_ylim(low, high)
+        ends.append((float(times[known[-1]]), float(middle[known[-1]])))
+    ax.set_ylim(np.nanmin(mean) * 0.85, np.nanmax(mean) * 1.12)
     ax.set_ylabel("mean energy [MeV]")
-    names_at_right(ax, names, (np.array(ends) - low) / (high - low), 1.6 * LABEL_SIZE)
-    for text in ax.texts:
-        text.set_fontsize(LABEL_SIZE)
-    words = "widths: a quarter of each spectrum's standard deviation"
-    ax.annotate(words, (0.01, 0.04), xycoords="axes fraction", fontsize=FOOT_SIZE)
+    return names, ends
+
+
+def _alike(mean: Floats) -> bool:
+    """Say whether ν_x and ν̄_x have the same mean energy at all times."""
+    return np.allclose(mean[2], mean[3], equal_nan=True)
 
 
 def _both(species: str, mean: Floats) -> str:
     """Name a species, with its antineutrino where both have the same line."""
-    alike = species == "nu_x" and np.allclose(mean[2], mean[3], equal_nan=True)
+    alike = species == "nu_x" and _alike(mean)
     return f"{SYMBOLS['nu_x']}, {SYMBOLS['anti_nu_x']}" if alike else SYMBOLS[species]
 
 
@@ -208,15 +248,18 @@ def _running_share(ax: Axes, burst: Burst) -> None:
     power = MULTIPLICITY @ burst.luminosity(times)
     steps = 0.5 * (power[1:] + power[:-1]) * np.diff(times)
     share = np.append(0.0, np.cumsum(steps)) / steps.sum()
-    for wanted in SHARES:
-        at = float(np.interp(wanted, share, times))
+    reached = [float(np.interp(wanted, share, times)) for wanted in SHARES]
+    for wanted, at in zip(SHARES, reached, strict=True):
+        if at > TIMES_S[-1]:
+            continue
         ax.plot(at, 0, marker="^", markersize=5, color="black", clip_on=False)
         ax.annotate(
             f"{wanted:.0%}",
             (at, 0),
-            xytext=(0, 5),
+            xytext=(0, -6),
             textcoords="offset points",
             ha="center",
+            va="top",
             fontsize=FOOT_SIZE,
             path_effects=halo(),
         )
@@ -240,11 +283,19 @@ def _phases(ax: Axes, burst: Burst, times: Floats) -> None:
         )
 
 
+def _clearest(cases: Sequence[Floats]) -> int:
+    """Index of the species whose curves, (species, energies) each, differ most at the closest."""
+    curves = np.array(cases)
+    pairs = [np.abs(a - b).max(axis=-1) for n, a in enumerate(curves) for b in curves[n + 1 :]]
+    return int(np.argmax(np.min(pairs, axis=0) / curves.max(axis=(0, 2))))
+
+
 def _name_cases(ax: Axes, energy: Floats, curves: Sequence[tuple[str, Floats]]) -> None:
-    """Name the curves of one panel at energies where they stand apart."""
-    places = np.linspace(0.12, 0.4, len(curves)) * len(energy)
-    points = [
-        (float(energy[int(at)]), float(curve[int(at)]))
-        for at, (_, curve) in zip(places, curves, strict=True)
-    ]
-    names_in_column(ax, [name for name, _ in curves], points, left=0.5)
+    """Name the curves of one panel, each where it is furthest from the others."""
+    values = np.array([curve for _, curve in curves])
+    points = []
+    for rank, curve in enumerate(values):
+        away = np.abs(np.delete(values, rank, axis=0) - curve).min(axis=0)
+        at = int(np.argmax(away))
+        points.append((float(energy[at]), float(curve[at])))
+    names_in_column(ax, [name for name, _ in curves], points, left=0.42)
