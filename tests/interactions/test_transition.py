@@ -19,10 +19,10 @@ PLAIN = Transition(FERMI_CONSTANT_PER_MEV2, 1.5, 16.8, 0.0, 0.0, 7, 12)
 def test_without_magnetism_and_form_factor_it_is_the_allowed_cross_section():
     """(G²/π) p E F S: the bracket integrates to three exactly, 1e-12."""
     energy = np.array([17.5, 25.0, 60.0, 150.0])
-    assert PLAIN.total_cm2(energy) == pytest.approx(PLAIN.scale_cm2(energy), rel=1e-12)
+    assert PLAIN.total_cm2(energy) == pytest.approx(1.5 * PLAIN.scale_cm2(energy), rel=1e-12)
     lepton = energy - 16.8
     p = np.sqrt(lepton**2 - ELECTRON_MASS_MEV**2)
-    expected = FERMI_CONSTANT_PER_MEV2**2 * HBAR_C_MEV_CM**2 / np.pi * p * lepton * 1.5
+    expected = FERMI_CONSTANT_PER_MEV2**2 * HBAR_C_MEV_CM**2 / np.pi * p * lepton
     assert PLAIN.scale_cm2(energy) == pytest.approx(expected * fermi_function(p, 7, 12), rel=1e-12)
 
 

@@ -12,7 +12,7 @@ from typing import Any
 
 from tenkpc import data
 from tenkpc.errors import UnknownNameError
-from tenkpc.interactions import carbon, oxygen
+from tenkpc.interactions import carbon, levels, oxygen
 from tenkpc.interactions.base import Interaction
 from tenkpc.interactions.electron import ElectronInputs, electron_scattering
 from tenkpc.interactions.inverse_beta import inverse_beta_decay
@@ -119,16 +119,62 @@ def _oxygen(build: Callable[[oxygen.OxygenInputs], Interaction]) -> Callable[[st
     return built
 
 
+def _levels(
+    key: str, build: Callable[[levels.LevelInputs], Interaction]
+) -> Callable[[str], Interaction]:
+    def built(_: str) -> Interaction:
+        couplings, tables = _tables("weak_couplings"), _tables("rare_isotopes")
+        ft, reaction = tables["twice_superallowed_ft_s"], tables[key]
+        inputs = levels.LevelInputs(
+            charge=reaction["charge"],
+            nucleons=reaction["nucleons"],
+            levels=tuple(_level(level, ft) for level in reaction["levels"]),
+            twice_superallowed_ft_s=ft,
+            axial_coupling=couplings["axial_coupling"],
+            sin2_theta_w=couplings["sin2_theta_w"]["at_zero"],
+            oscillator_fm=tables["oscillator_fm"],
+        )
+        return build(inputs)
+
+    return built
+
+
+def _level(table: Mapping[str, Any], two_ft: float) -> levels.Level:
+    """Level of a table; its strength is given, or follows from the ft value of a decay."""
+    fermi, strength = table.get("fermi", 0.0), table.get("strength", 0.0)
+    if "ft_s" in table:  # between the two halves of a doublet: 2Ft/ft = B(F) + S
+        strength = two_ft / table["ft_s"] - fermi
+    elif "log_ft" in table:  # 1⁺ to 0⁺, whose spins have the ratio 3
+        strength = 3 * two_ft / 10 ** table["log_ft"]
+    return levels.Level(
+        label=table["label"],
+        opens_mev=table["opens_mev"],
+        strength=strength,
+        fermi=fermi,
+        proton_mev=table.get("proton_mev", 0.0),
+        gamma_mev=table.get("gamma_mev", 0.0),
+        error_mev=tuple(table["error_mev"]),
+        error=tuple(table["error"]),
+    )
+
+
 _BUILDERS: Mapping[str, Callable[[str], Interaction]] = MappingProxyType(
     {
         "carbon-12-excited": _carbon(carbon.excited),
         "carbon-12-to-boron-12": _carbon(carbon.to_boron),
         "carbon-12-to-nitrogen-12": _carbon(carbon.to_nitrogen),
+        "carbon-13-excited": _levels("carbon-13-excited", levels.carbon_13_excited),
+        "carbon-13-to-nitrogen-13": _levels(
+            "carbon-13-to-nitrogen-13", levels.carbon_13_to_nitrogen
+        ),
         "electron-scattering": _electron,
         "inverse-beta-decay": _inverse_beta,
         "oxygen-16-excited": _oxygen(oxygen.excited),
         "oxygen-16-to-fluorine-16": _oxygen(oxygen.to_fluorine),
         "oxygen-16-to-nitrogen-16": _oxygen(oxygen.to_nitrogen),
+        "oxygen-18-to-fluorine-18": _levels(
+            "oxygen-18-to-fluorine-18", levels.oxygen_18_to_fluorine
+        ),
         "proton-scattering": _proton,
     }
 )

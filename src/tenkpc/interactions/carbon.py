@@ -21,7 +21,6 @@ from numpy.typing import ArrayLike, NDArray
 from tenkpc.constants import (
     ELECTRON_MASS_MEV,
     FERMI_CONSTANT_PER_MEV2,
-    HBAR_MEV_S,
     MUON_MASS_MEV,
 )
 from tenkpc.interactions.base import (
@@ -33,7 +32,7 @@ from tenkpc.interactions.base import (
     Shifted,
     piecewise,
 )
-from tenkpc.interactions.transition import Transition, over_angle
+from tenkpc.interactions.transition import Transition, beta_coupling_per_mev2, over_angle
 from tenkpc.quadrature import gauss
 from tenkpc.species import SPECIES
 
@@ -161,16 +160,11 @@ def excited(inputs: CarbonInputs) -> Interaction:
 
 
 def charged_transition(inputs: CarbonInputs, daughter: str) -> Transition:
-    """Transition to the ground state of ``"nitrogen-12"`` or ``"boron-12"``.
-
-    G² = 2π³ ln2 ħ/(2Ft m_e⁵) holds G_F², V_ud² and the inner radiative correction.
-    """
-    square = 2 * np.pi**3 * np.log(2) * HBAR_MEV_S
-    square = square / (inputs.twice_superallowed_ft_s * ELECTRON_MASS_MEV**5)
+    """Transition to the ground state of ``"nitrogen-12"`` or ``"boron-12"``."""
     electron = daughter == "nitrogen-12"
     moment = inputs.effective_moment / inputs.axial_coupling
     return Transition(
-        coupling_per_mev2=float(np.sqrt(square)),
+        coupling_per_mev2=beta_coupling_per_mev2(inputs.twice_superallowed_ft_s),
         strength=inputs.strength[daughter],
         energy_mev=inputs.ground_threshold_mev[daughter] - ELECTRON_MASS_MEV,
         moment_over_axial=moment if electron else -moment,
@@ -200,7 +194,7 @@ def neutral_transition(inputs: CarbonInputs, sign: float) -> Transition:
 def excited_cm2(neutrino_mev: ArrayLike, level: Transition, asymmetry: float) -> Floats:
     """Cross section of the effective level up to its size, in arbitrary units; 0 when closed."""
     energy = np.asarray(neutrino_mev, dtype=float)
-    beta = level.momentum_mev(energy) / np.maximum(energy - level.energy_mev, ELECTRON_MASS_MEV)
+    beta = level.velocity(energy)
 
     def shape(c: Floats, q: Floats) -> Floats:
         falling = np.exp(-2 * level.oscillator_y(q))
@@ -260,8 +254,8 @@ def _excited(
 
 
 def _above(ground: Transition, inputs: CarbonInputs) -> Transition:
-    """The effective level above a ground state, of unit strength for neutrinos of either sign."""
-    return replace(ground, strength=1.0, energy_mev=ground.energy_mev + inputs.excited_mev)
+    """The effective level above a ground state."""
+    return replace(ground, energy_mev=ground.energy_mev + inputs.excited_mev)
 
 
 def _excited_factor(inputs: CarbonInputs) -> float:
