@@ -183,3 +183,12 @@ def test_help_names_every_command():
     """The first thing that a newcomer types."""
     output = run("--help").output
     assert all(name in output for name in ("check", "forecast", "list"))
+
+
+def test_interactions_are_held_against_measurements():
+    """The option belongs to interactions alone."""
+    assert "pull" in run("list", "interactions", "--checks").output
+    assert "karmen" in run("list", "interactions", "carbon-12-excited", "--checks").output
+    done = run("list", "bursts", "--checks")
+    assert done.exit_code == 2
+    assert "only interactions" in done.output

@@ -151,11 +151,18 @@ def new(kind: str, file: str) -> None:
 @main.command("list")
 @click.argument("what", type=click.Choice(LISTS))
 @click.argument("name", required=False)
+@click.option("--checks", "with_checks", is_flag=True, help="Interactions against measurements.")
 @click.option("--json", "as_json", is_flag=True, help="Print the list as JSON.")
-def list_(what: str, name: str | None, as_json: bool) -> None:
+def list_(what: str, name: str | None, with_checks: bool, as_json: bool) -> None:
     """List what comes with the package, or say all about one NAME."""
-    from tenkpc.show import catalogue
+    from tenkpc.show import catalogue, checks
 
+    if with_checks:
+        if what != "interactions":
+            message = f"--checks: only interactions are held against measurements, not {what}"
+            raise InputError(message)
+        click.echo(checks.as_json(name) if as_json else checks.as_text(name))
+        return
     click.echo(catalogue.as_json(what, name) if as_json else catalogue.as_text(what, name))
 
 
