@@ -21,7 +21,7 @@ def changed(old, new):
 
 def test_the_gallery_file_says_what_it_means():
     """Kinds of energy, light of each particle, backgrounds per second, errors."""
-    response = HALL.response
+    response = HALL.volumes[0].response
     assert response.kind == "visible"
     assert response.event_offset_mev == 0.0
     assert response.visible("positron", 3.0) == pytest.approx(3.0 + 2 * ELECTRON_MASS_MEV)
@@ -38,8 +38,10 @@ def test_birks_comes_in_two_dimensions():
     """Per length with a density, or per area without: the same light."""
     per_area = changed('"0.0104 cm/MeV"', f'"{0.0104 * 0.86!r} g/cm^2/MeV"')
     for kinetic in (0.5, 2.0, 8.0):
-        expected = HALL.response.visible("proton", kinetic)
-        assert per_area.response.visible("proton", kinetic) == pytest.approx(expected, rel=1e-9)
+        expected = HALL.volumes[0].response.visible("proton", kinetic)
+        assert per_area.volumes[0].response.visible("proton", kinetic) == pytest.approx(
+            expected, rel=1e-9
+        )
 
 
 def test_volumes_of_other_materials_have_a_light_of_their_own():
@@ -64,9 +66,9 @@ def test_a_table_of_light(tmp_path):
         Detector.parse(text, folder=str(tmp_path))
     text = text.replace('"light.csv" }', '"light.csv", beyond = "extend" }')
     made = Detector.parse(text, folder=str(tmp_path))
-    assert made.response.visible("proton", 0.25) == pytest.approx(0.05)
+    assert made.volumes[0].response.visible("proton", 0.25) == pytest.approx(0.05)
     slope = (6 - 0.25) / 9
-    assert made.response.visible("proton", 20.0) == pytest.approx(6 + 10 * slope)
+    assert made.volumes[0].response.visible("proton", 20.0) == pytest.approx(6 + 10 * slope)
     assert made.proton_light == "table light.csv"
     (tmp_path / "light.csv").write_text("kinetic_mev,visible_mev\n1,0.5\n2,0.4\n")
     with pytest.raises(FileError, match="ascend from zero"):
@@ -76,7 +78,7 @@ def test_a_table_of_light(tmp_path):
 def test_no_quenching_has_to_be_written():
     """Without a word about protons a scintillator is refused; "none" is a word."""
     made = changed('birks = "0.0104 cm/MeV"', 'quenching = "none"')
-    assert made.response.visible("proton", 3.0) == 3.0
+    assert made.volumes[0].response.visible("proton", 3.0) == 3.0
     with pytest.raises(FileError, match=r"give birks .hydrocarbons., or quenching.*found neither"):
         changed('birks = "0.0104 cm/MeV"\n', "")
     with pytest.raises(FileError, match="found birks and quenching"):

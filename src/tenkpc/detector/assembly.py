@@ -17,7 +17,7 @@ from tenkpc.detector.materials import Composition
 from tenkpc.detector.media import EVENT_OFFSETS_MEV, MEDIA
 from tenkpc.detector.quenching import Light, Plain, Quenched, quenched_protons
 from tenkpc.detector.response import Curve, Resolution, Response
-from tenkpc.detector.response_file import EfficiencyKeys, ResponseKeys
+from tenkpc.detector.response_file import EfficiencyKeys, ResponseKeys, joined
 from tenkpc.documents import Document
 from tenkpc.fields import BIRKS_PER_LENGTH
 from tenkpc.interactions.base import HIGHEST_ENERGY_MEV
@@ -28,13 +28,14 @@ FASTEST_PROTON_MEV = 60.0
 
 @dataclass(frozen=True)
 class Volume:
-    """So much of one material, and how it responds."""
+    """So much of one material, how it responds, and which keys of that are its own."""
 
     name: str
     mass_kg: float
     material: str
     composition: Composition = field(compare=False)
     response: Response = field(compare=False)
+    own: frozenset[str] = field(compare=False, default=frozenset())
 
     def targets(self, kind: str) -> float:
         """Count the targets of a kind: ``"electron"`` or a nuclide such as ``"H-1"``."""
@@ -49,16 +50,44 @@ def volumes(keys: DetectorKeys, document: Document) -> tuple[Volume, ...]:
     FileError
         where a table or a curve is not usable.
     """
-    curve = _efficiency(keys.response, document)
-    known: dict[tuple[Light | None, ...], Response] = {}
+    unsure = keys.uncertainty.energy_scale
+    known: dict[tuple[Any, ...], Response] = {}
     made = []
     for volume in keys.volume:
         words, composition = _composition(volume)
-        light = _proton_light(keys.response, volume, composition, document)
-        if (light,) not in known:
-            known[light,] = _response(keys, curve, light)
-        made.append(Volume(volume.name, volume.mass, words, composition, known[light,]))
+        given = response_keys(keys, volume)
+        own = ("volume", volume.name, "response") if volume.response else ("response",)
+        light = _proton_light(given, volume, composition, document)
+        if (given, light) not in known:
+            known[given, light] = _response(given, own, light, unsure, document)
+        stated = volume.response.model_fields_set if volume.response else ()
+        made.append(
+            Volume(
+                volume.name,
+                volume.mass,
+                words,
+                composition,
+                known[given, light],
+                own=frozenset(stated),
+            )
+        )
     return tuple(made)
+
+
+def common(keys: DetectorKeys, document: Document) -> Response:
+    """Build what `[response]` says of the whole detector; light of protons belongs to volumes."""
+    return _response(keys.response, ("response",), None, keys.uncertainty.energy_scale, document)
+
+
+def response_keys(keys: DetectorKeys, volume: VolumeKeys) -> ResponseKeys:
+    """Keys of a volume's whole response: its own in place of the common ones."""
+    if volume.response is None:
+        return keys.response
+    whole, own = (
+        {name: getattr(table, name) for name in table.model_fields_set}
+        for table in (keys.response, volume.response)
+    )
+    return ResponseKeys.model_construct(**joined(whole, own))
 
 
 def backgrounds(keys: DetectorKeys, document: Document) -> tuple[Background, ...]:
@@ -87,8 +116,14 @@ def _composition(keys: VolumeKeys) -> tuple[str, Composition]:
     return words, COMPOSITIONS[key](made_of)
 
 
-def _response(keys: DetectorKeys, efficiency: Curve, protons: Light | None) -> Response:
-    given = keys.response
+def _response(
+    given: ResponseKeys,
+    path: tuple[str, ...],
+    protons: Light | None,
+    scale_error: float,
+    document: Document,
+) -> Response:
+    efficiency = _efficiency(given, path, document)
     width, medium = given.resolution, MEDIA[given.medium]
     of_truth = given.efficiency is not None and given.efficiency.of == "true"
     light = dict(medium.light) if protons is None else {**medium.light, "proton": protons}
@@ -103,7 +138,7 @@ def _response(keys: DetectorKeys, efficiency: Curve, protons: Light | None) -> R
         efficiency=Curve() if of_truth else efficiency,
         true_efficiency=efficiency if of_truth else Curve(),
         live_fraction=given.live_fraction,
-        scale_error=keys.uncertainty.energy_scale,
+        scale_error=scale_error,
     )
 
 
@@ -155,7 +190,7 @@ def _light_table(file: str, extend: bool, document: Document) -> Quenched:
     return Quenched((*start, *kinetic), (*start, *visible))
 
 
-def _efficiency(keys: ResponseKeys, document: Document) -> Curve:
+def _efficiency(keys: ResponseKeys, path: tuple[str, ...], document: Document) -> Curve:
     """Curve of an efficiency; perfect where none is given."""
     given = keys.efficiency
     if given is None:
@@ -168,7 +203,7 @@ def _efficiency(keys: ResponseKeys, document: Document) -> Curve:
         points = tuple(zip(columns["energy_mev"], columns["efficiency"], strict=True))
     problem = _unusable(points, given, _threshold_mev(keys))
     if problem:
-        raise document.refused([(("response", "efficiency"), problem)])
+        raise document.refused([((*path, "efficiency"), problem)])
     energies, values = zip(*points, strict=True)
     return Curve(tuple(energies), tuple(values), zero_outside=given.beyond == "zero")
 

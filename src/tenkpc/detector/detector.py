@@ -33,6 +33,8 @@ class Detector:
         words of the file.
     volumes
         masses of material, each with its response.
+    response
+        what the instrument makes of an event, as far as it is common to all volumes.
     backgrounds
         events recorded without a burst.
     interactions
@@ -50,6 +52,7 @@ class Detector:
     about: str = field(compare=False, default="")
     medium: str = field(compare=False, default="")
     volumes: tuple[Volume, ...] = field(compare=False, default=())
+    response: Response = field(compare=False, default_factory=Response)
     backgrounds: tuple[Background, ...] = field(compare=False, default=())
     interactions: Mapping[str, bool | float | str] = field(compare=False, default_factory=dict)
     proton_light: str = field(compare=False, default="")
@@ -97,6 +100,7 @@ class Detector:
             about=keys.about,
             medium=keys.response.medium,
             volumes=assembly.volumes(keys, whole),
+            response=assembly.common(keys, whole),
             backgrounds=assembly.backgrounds(keys, whole),
             interactions=MappingProxyType(dict(keys.interactions)),
             proton_light=_proton_light(keys.response),
@@ -127,11 +131,6 @@ class Detector:
     def origin(self) -> str:
         """Path of the file, or name in the gallery."""
         return self.document.origin
-
-    @property
-    def response(self) -> Response:
-        """What the instrument makes of an event; light of protons as in the first volume."""
-        return self.volumes[0].response
 
     @property
     def mass_kg(self) -> float:

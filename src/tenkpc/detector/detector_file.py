@@ -13,7 +13,8 @@ from pydantic import Field
 from tenkpc import interactions
 from tenkpc.detector import materials
 from tenkpc.detector.background import SHAPES
-from tenkpc.detector.response_file import ResponseKeys
+from tenkpc.detector.media import MEDIA
+from tenkpc.detector.response_file import OwnResponseKeys, ResponseKeys, joined
 from tenkpc.errors import InputError, suggestion
 from tenkpc.fields import BIRKS_PER_LENGTH, BirksConstant, Density, Energy, Fraction, Mass, Rate
 from tenkpc.textfiles import Strict
@@ -42,6 +43,7 @@ class VolumeKeys(Strict):
     formula: str | None = None
     mass_fractions: dict[str, float] | None = None
     density: Density | None = None
+    response: OwnResponseKeys | None = None
 
     @classmethod
     def cross_rules(cls, raw: Mapping[str, Any]) -> Problems:
@@ -121,8 +123,10 @@ class DetectorKeys(Strict):
             except InputError as error:
                 yield ("interactions", key), str(error)
         response = raw.get("response")
-        if isinstance(response, dict) and "birks" in response:
-            yield from _quenchable(_tables(raw, "volume"), response["birks"])
+        for place, volume in enumerate(_tables(raw, "volume")):
+            own = volume.get("response", {})
+            if isinstance(response, dict) and isinstance(own, dict):
+                yield from _responses(place, volume, response, own)
 
 
 def check_choice(key: str, value: object) -> None:
@@ -169,28 +173,46 @@ def _twice(key: str, tables: list[Mapping[str, Any]]) -> Iterator[Any]:
         seen.add(name if isinstance(name, str) else "")
 
 
-def _quenchable(volumes: list[Mapping[str, Any]], birks: object) -> Iterator[Any]:
+def _responses(
+    place: int, volume: Mapping[str, Any], common: Mapping[str, Any], own: Mapping[str, Any]
+) -> Iterator[Any]:
+    """Rules of a volume's whole response, told at its own table where it has one."""
+    whole = joined(common, own)
+    if own:
+        for path, message in ResponseKeys.cross_rules(whole):
+            yield ("volume", place, "response", *path), message
+        kinds = [_kind(tables) for tables in (common, whole)]
+        if None not in kinds and kinds[0] != kinds[1]:
+            yield (
+                ("volume", place, "response"),
+                f"all volumes report one kind of energy; found {kinds[1]} here and {kinds[0]}",
+            )
+    if "birks" in whole:
+        yield from _quenchable(place, volume, whole["birks"])
+
+
+def _kind(response: Mapping[str, Any]) -> str | None:
+    medium = response.get("medium")
+    if not isinstance(medium, str) or medium not in MEDIA:
+        return None
+    return str(response.get("energy", MEDIA[medium].kinds[0]))
+
+
+def _quenchable(place: int, table: Mapping[str, Any], birks: object) -> Iterator[Any]:
     """Say what Birks' constant alone cannot do: other elements, and a density that is missing."""
+    given = [key for key in COMPOSITIONS if key in table]
     try:
         per_length = BirksConstant().convert(birks)[1] == BIRKS_PER_LENGTH
-    except InputError:
+        made = COMPOSITIONS[given[0]](table[given[0]]) if len(given) == 1 else None
+    except (InputError, TypeError, AttributeError):
         return  # reported where it stands
-    for place, table in enumerate(volumes):
-        given = [key for key in COMPOSITIONS if key in table]
-        try:
-            made = COMPOSITIONS[given[0]](table[given[0]]) if len(given) == 1 else None
-        except (InputError, TypeError, AttributeError):
-            continue  # reported where it stands
-        others = sorted(set(materials.elements(made)) - {"H", "C"}) if made is not None else []
-        if others:
-            message = (
-                f"birks needs the stopping power of protons, which is known here for H and C "
-                f"alone; {table[given[0]]!r} holds {', '.join(others)}: give quenching = "
-                "{ file = … } in its place"
-            )
-            yield ("volume", place, given[0]), message
-        elif given[:1] != ["material"] and "density" not in table and per_length:
-            yield (
-                ("volume", place, "density"),
-                f"is missing; birks in {BIRKS_PER_LENGTH} needs it",
-            )
+    others = sorted(set(materials.elements(made)) - {"H", "C"}) if made is not None else []
+    if others:
+        message = (
+            f"birks needs the stopping power of protons, which is known here for H and C "
+            f"alone; {table[given[0]]!r} holds {', '.join(others)}: give quenching = "
+            "{ file = … } in its place"
+        )
+        yield ("volume", place, given[0]), message
+    elif given[:1] != ["material"] and "density" not in table and per_length:
+        yield ("volume", place, "density"), f"is missing; birks in {BIRKS_PER_LENGTH} needs it"

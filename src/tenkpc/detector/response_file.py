@@ -112,3 +112,29 @@ class ResponseKeys(Strict):
                 "the light of recoil protons: give birks (hydrocarbons), or quenching = "
                 f'{{ file = … }}, or quenching = "none"; found {found}',
             )
+
+
+class OwnResponseKeys(ResponseKeys):
+    """`[volume.response]`: what one volume does otherwise than `[response]` says.
+
+    What is left out is as in `[response]`; a medium of its own begins anew.
+    """
+
+    medium: Literal["cherenkov", "scintillator"] | None = None  # type: ignore[assignment]
+
+    @classmethod
+    def cross_rules(cls, raw: Mapping[str, Any]) -> Problems:
+        """None alone: the rules are those of the whole that it makes with `[response]`."""
+        return ()
+
+
+# each of these takes the other's place
+_EITHER = ("birks", "quenching")
+
+
+def joined(common: Mapping[str, Any], own: Mapping[str, Any]) -> dict[str, Any]:
+    """Tables of a volume's whole response: the common keys with its own in their place."""
+    if "medium" in own:
+        return dict(own)
+    replaced = set(_EITHER) if any(key in own for key in _EITHER) else set()
+    return {**{k: v for k, v in common.items() if k not in replaced}, **own}

@@ -7,8 +7,9 @@ from collections.abc import Iterator
 
 from tenkpc import interactions
 from tenkpc.detector import gallery
+from tenkpc.detector.detector import Detector
 from tenkpc.detector.media import MEDIA
-from tenkpc.detector.response import Curve, Resolution
+from tenkpc.detector.response import Curve, Resolution, Response
 from tenkpc.forecast.evaluation import Evaluation
 from tenkpc.interactions.base import Reference
 from tenkpc.rendering import decimals_for, number, percent
@@ -50,21 +51,34 @@ def window_clause(forecast: Evaluation) -> str:
 
 
 def _counted(forecast: Evaluation) -> str:
-    response = forecast.detector.response
-    losses = [] if _is_unity(response.efficiency) else ["efficiency"]
-    losses += [] if _is_unity(response.true_efficiency) else ["efficiency in true energy"]
-    losses += [] if response.live_fraction == 1 else ["live time"]
-    kept = f", kept by {' and '.join(losses)}" if losses else ""
+    responses = [volume.response for volume in forecast.detector.volumes]
+    losses = {
+        "efficiency": all(_is_unity(r.efficiency) for r in responses),
+        "efficiency in true energy": all(_is_unity(r.true_efficiency) for r in responses),
+        "live time": all(r.live_fraction == 1 for r in responses),
+    }
+    names = [name for name, none in losses.items() if not none]
+    kept = f", kept by {' and '.join(names)}" if names else ""
     return f"Counted means: {threshold(forecast)}{kept}."
 
 
 def threshold(forecast: Evaluation) -> str:
     """Say above which energy, and of which kind, an event must be observed."""
-    response = forecast.detector.response
-    lowest = max(response.threshold_mev, forecast.energy_above_mev or 0.0)
-    if lowest <= 0:
-        return f"observed at any {response.kind} energy"
-    return f"observed above {lowest:.4g} MeV of {response.kind} energy"
+    detector, kind = forecast.detector, forecast.detector.response.kind
+    where: dict[float, list[str]] = {}
+    for volume in detector.volumes:
+        lowest = max(volume.response.threshold_mev, forecast.energy_above_mev or 0.0)
+        where.setdefault(lowest, []).append(volume.name)
+    if len(where) == 1:
+        return f"observed {_above(lowest, kind)}"
+    parts = (f"{_above(cut, kind)} in {' and '.join(names)}" for cut, names in where.items())
+    return f"observed {', '.join(parts)}"
+
+
+def _above(lowest_mev: float, kind: str) -> str:
+    if lowest_mev <= 0:
+        return f"at any {kind} energy"
+    return f"above {lowest_mev:.4g} MeV of {kind} energy"
 
 
 def mass(mass_kg: float) -> str:
@@ -128,15 +142,12 @@ def _of_detector(forecast: Evaluation) -> Iterator[Assumption]:
         yield f"volume {volume.name}", f"{volume.mass_kg:.6g} kg {volume.material}", detector.origin
         yield "  free protons", f"{volume.targets('H-1'):.4g}", "composition"
         yield "  electrons", f"{volume.targets('electron'):.4g}", "composition"
-    rows = (
-        ("energy", "observed energy", f"{response.kind} energy"),
-        ("threshold", "threshold", threshold(forecast)),
-        ("resolution", "resolution", resolution(response.resolution)),
-        ("efficiency", "efficiency", curve(response.efficiency)),
-        ("live_fraction", "live fraction", percent(response.live_fraction)),
-    )
-    for key, name, value in rows:
-        yield name, value, detector.origin if key in given else "default"
+        rows = _of_response(volume.response)
+        yield from ((f"  {n}", v, detector.origin) for key, n, v in rows if key in volume.own)
+    yield "observed energy", f"{response.kind} energy", _origin(detector, "energy", given)
+    yield "threshold", threshold(forecast), _origin(detector, "threshold", given)
+    for key, name, value in _of_response(response)[1:]:
+        yield name, value, _origin(detector, key, given)
     yield "light of protons", detector.proton_light, detector.origin
     for source in detector.backgrounds:
         rate = f"{source.rate_hz:.4g} Hz above the threshold"
@@ -148,6 +159,20 @@ def _of_detector(forecast: Evaluation) -> Iterator[Assumption]:
     }
     for name, error in errors.items():
         yield f"error of {name}", percent(error), detector.origin if error else "default"
+
+
+def _of_response(response: Response) -> tuple[tuple[str, str, str], ...]:
+    """Keys of a response with their names and values."""
+    return (
+        ("threshold", "threshold", f"{response.threshold_mev:.4g} MeV {response.kind} energy"),
+        ("resolution", "resolution", resolution(response.resolution)),
+        ("efficiency", "efficiency", curve(response.efficiency)),
+        ("live_fraction", "live fraction", percent(response.live_fraction)),
+    )
+
+
+def _origin(detector: Detector, key: str, given: frozenset[str]) -> str:
+    return detector.origin if key in given else "default"
 
 
 def largest_sources(forecast: Evaluation, most: int) -> list[tuple[str, tuple[Reference, ...]]]:

@@ -137,7 +137,8 @@ def _background_on_top(ax: Axes, frame: DataFrame, total: Floats, edges: Floats)
 
 
 def _shade_below_threshold(ax: Axes, forecast: Forecast) -> None:
-    threshold = max(forecast.detector.response.threshold_mev, forecast.energy_above_mev or 0.0)
+    cuts = [volume.response.threshold_mev for volume in forecast.detector.volumes]
+    threshold = max(min(cuts), forecast.energy_above_mev or 0.0)
     if threshold <= 0:
         return
     ax.axvspan(0, threshold, color="0.85", zorder=0, linewidth=0)
