@@ -149,13 +149,13 @@ def _integral(
 ) -> Floats:
     """∫ dT weight dσ/dT over all recoils, zero at zero energy."""
     energy = np.asarray(neutrino_mev, dtype=float)
-    positive = np.where(energy > 0, energy, 1.0)[..., None]
+    positive = np.where(energy > recoil.LOWEST_MEV, energy, 1.0)[..., None]
     share, width = _recoil_nodes()
     highest = recoil.highest_recoil_mev(positive, M)
     kinetic = highest * share
     values = per_recoil_energy(positive, kinetic, species, inputs) * weight(positive, kinetic)
     summed: Floats = (values * width * highest).sum(axis=-1)
-    return np.where(energy > 0, summed, 0.0)
+    return np.where(energy > recoil.LOWEST_MEV, summed, 0.0)
 
 
 @lru_cache(maxsize=1)

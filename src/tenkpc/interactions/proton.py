@@ -153,8 +153,8 @@ def total_cm2(neutrino_mev: ArrayLike, sign: float, inputs: ProtonInputs) -> Flo
     Held at its value at 300 MeV above it.
     """
     energy = np.minimum(np.asarray(neutrino_mev, dtype=float), HIGHEST_MEV)
-    positive = np.where(energy > 0, energy, 1.0)[..., None]
+    positive = np.where(energy > recoil.LOWEST_MEV, energy, 1.0)[..., None]
     x, w = gauss(NODES)
     highest = recoil.highest_recoil_mev(positive, M)
     values = per_recoil_energy(positive, highest * x, sign, inputs)
-    return np.where(energy > 0, (values * highest * w).sum(axis=-1), 0.0)
+    return np.where(energy > recoil.LOWEST_MEV, (values * highest * w).sum(axis=-1), 0.0)

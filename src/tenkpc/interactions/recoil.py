@@ -7,6 +7,9 @@ from numpy.typing import NDArray
 
 Floats = NDArray[np.float64]
 
+# below this neutrino energy, MeV, cross sections are taken as zero: their squares still have digits
+LOWEST_MEV = 1e-9
+
 
 def lowest_neutrino_mev(kinetic_mev: Floats, mass_mev: float) -> Floats:
     """E_min = [T + √(T(T + 2M))]/2, the lowest neutrino energy for a recoil T."""
