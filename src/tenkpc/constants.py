@@ -29,7 +29,6 @@ ANOMALOUS_MOMENT_DIFFERENCE = PROTON_MOMENT - 1.0 - NEUTRON_MOMENT  # kappa_p - 
 # exact conversions: the SI electronvolt, the IAU 2015 parsec
 MEV_PER_ERG = 1e-13 / 1.602176634e-19
 CM_PER_KPC = 648000 / math.pi * 149597870700e2 * 1e3
-SECONDS_PER_DAY = 86400.0
 LIGHT_CM_PER_S = 2.99792458e10  # exact in the SI
 # nominal solar mass parameter of the IAU 2015 over Newton's constant, in grams
 SOLAR_MASS_G = 1.98841e33

@@ -11,7 +11,8 @@ from pydantic_core import PydanticCustomError, core_schema
 from tenkpc import units
 from tenkpc.errors import DimensionError, InputError
 
-BIRKS_PER_LENGTH, BIRKS_PER_AREA = BIRKS_UNITS = ("cm/MeV", "g/cm^2/MeV")
+BIRKS_PER_LENGTH = "cm/MeV"
+BIRKS_UNITS = (BIRKS_PER_LENGTH, "g/cm^2/MeV")
 # scintillators have about 0.01 (common practice); ten times as much is a slip of a unit
 LARGEST_BIRKS = 0.1
 

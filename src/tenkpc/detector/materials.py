@@ -15,7 +15,6 @@ from tenkpc.nuclides import Nuclide, atoms
 
 # mass fractions may miss 1 by this much, for rounding; then they are scaled to add up exactly
 ROUNDING = 1e-3
-FREE_PROTON = "H-1"
 
 
 @dataclass(frozen=True, eq=False)

@@ -55,4 +55,3 @@ MEDIA: Mapping[str, Medium] = MappingProxyType(
 )
 # what a kind adds to the kinetic energy of an event that is taken for a single electron
 EVENT_OFFSETS_MEV = {"kinetic": 0.0, "total": ELECTRON_MASS_MEV, "visible": 0.0}
-KINDS = tuple(EVENT_OFFSETS_MEV)

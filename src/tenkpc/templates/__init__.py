@@ -4,8 +4,6 @@ from __future__ import annotations
 
 from importlib.resources import files
 
-KINDS = ("burst", "detector")
-
 
 def text(kind: str) -> str:
     """Text of a file to begin with, ``"detector"`` or ``"burst"``."""
