@@ -9,8 +9,9 @@ from functools import lru_cache
 from types import MappingProxyType
 
 from tenkpc import data
-from tenkpc.constants import AVOGADRO_PER_MOL
+from tenkpc.constants import ATOMIC_MASS_MEV, AVOGADRO_PER_MOL, ELECTRON_MASS_MEV
 from tenkpc.errors import InputError, UnknownNameError
+from tenkpc.interactions.base import Nucleus
 from tenkpc.nuclides import Nuclide, atoms
 
 # mass fractions may miss 1 by this much, for rounding; then they are scaled to add up exactly
@@ -34,11 +35,45 @@ class Composition:
         """Number of electrons: as many as protons."""
         return math.fsum(n.protons * count for n, count in self.nuclei_per_kg.items())
 
+    @property
+    def nuclei(self) -> tuple[Nucleus, ...]:
+        """Every nucleus in it, as a target."""
+        return tuple(map(nucleus, self.nuclei_per_kg))
+
     def targets(self, kind: str) -> float:
-        """Number per kilogram of ``"electron"`` or of a nuclide such as ``"H-1"``; 0 for none."""
+        """Number per kilogram of electrons, a nuclide or an element; 0 for none.
+
+        ``"electron"``, ``"H-1"``, or ``"Pb"`` for all its atoms.
+        """
         if kind == "electron":
             return self.electrons_per_kg
-        return math.fsum(count for n, count in self.nuclei_per_kg.items() if n.name == kind)
+        found = ((n.name, count) for n, count in self.nuclei_per_kg.items())
+        return math.fsum(count for name, count in found if kind in (name, symbol(name)))
+
+
+def nucleus(nuclide: Nuclide | str) -> Nucleus:
+    """Give a nuclide, or the one of a name such as ``"Ar-40"``, as a target.
+
+    Its mass is that of the neutral atom without its electrons.
+
+    Raises
+    ------
+    InputError
+        where a name is not that of one nuclide.
+    """
+    if isinstance(nuclide, str):
+        found = atoms(nuclide)
+        if len(found) != 1:
+            message = f"{nuclide!r} is not one nuclide; name one, such as {found[0][0].name!r}"
+            raise InputError(message)
+        nuclide = found[0][0]
+    mass = nuclide.mass_g_per_mol * ATOMIC_MASS_MEV - nuclide.protons * ELECTRON_MASS_MEV
+    return Nucleus(nuclide.name, nuclide.protons, nuclide.nucleons, mass)
+
+
+def symbol(nuclide: str) -> str:
+    """Symbol of a nuclide's element: ``"Pb"`` of ``"Pb-208"``."""
+    return nuclide.partition("-")[0]
 
 
 @dataclass(frozen=True)
@@ -55,8 +90,8 @@ def elements(composition: Composition) -> dict[str, float]:
     """Atoms of each element, by its symbol, in a kilogram."""
     found: dict[str, float] = {}
     for nuclide, count in composition.nuclei_per_kg.items():
-        symbol = nuclide.name.partition("-")[0]
-        found[symbol] = found.get(symbol, 0.0) + count
+        element = symbol(nuclide.name)
+        found[element] = found.get(element, 0.0) + count
     return found
 
 

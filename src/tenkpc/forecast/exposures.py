@@ -10,10 +10,12 @@ import numpy as np
 from numpy.typing import NDArray
 
 from tenkpc import interactions
+from tenkpc.detector.assembly import Volume
 from tenkpc.detector.detector import Detector
 from tenkpc.detector.response import Response
 from tenkpc.forecast.compiled import Compiled, Exposure, by_neutrino_energy, compile_rows
 from tenkpc.forecast.grid import EnergyGrid
+from tenkpc.interactions.base import Interaction
 
 Floats = NDArray[np.float64]
 Choices = tuple[tuple[str, bool | float | str], ...]
@@ -38,10 +40,19 @@ def exposures(
             value = dict(chosen).get(key, True)
             interaction = interactions.by_key(key, value if isinstance(value, str) else None)
             scale = 1.0 if isinstance(value, bool | str) else value
-            targets = volume.targets(interaction.target) * scale
-            if value is not False and targets > 0:
-                made.append(Exposure(volume.name, targets, interaction, response))
+            for reaction in _on(interaction, volume) if value is not False else ():
+                targets = volume.targets(reaction.target) * scale
+                if targets > 0:
+                    made.append(Exposure(volume.name, targets, reaction, response))
     return tuple(made)
+
+
+def _on(interaction: Interaction, volume: Volume) -> tuple[Interaction, ...]:
+    """Give an interaction as it is, or one of every nucleus on each in a volume."""
+    if interaction.of_nucleus is None:
+        return (interaction,)
+    each = map(interaction.on, volume.composition.nuclei)
+    return tuple(reaction for reaction in each if reaction is not None)
 
 
 def _cut(response: Response, energy_above_mev: float | None) -> Response:

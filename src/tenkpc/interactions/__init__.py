@@ -14,14 +14,17 @@ from tenkpc import data
 from tenkpc.errors import UnknownNameError
 from tenkpc.interactions import carbon, levels, oxygen
 from tenkpc.interactions.base import Interaction
+from tenkpc.interactions.coherent import CoherentInputs, coherent_scattering
 from tenkpc.interactions.electron import ElectronInputs, electron_scattering
 from tenkpc.interactions.inverse_beta import inverse_beta_decay
 from tenkpc.interactions.inverse_beta_kernel import InverseBetaInputs
 from tenkpc.interactions.proton import ProtonInputs, proton_scattering
+from tenkpc.species import SPECIES
 
 # named options of an interaction, the default first
 OPTIONS: Mapping[str, tuple[str, ...]] = MappingProxyType(
     {
+        "coherent-scattering": ("tree", "radiative"),
         "electron-scattering": ("radiative", "tree"),
         "proton-scattering": ("without-strangeness", "with-strangeness"),
     }
@@ -65,6 +68,27 @@ def _electron(option: str) -> Interaction:
         radiative=option == "radiative",
     )
     return electron_scattering(inputs)
+
+
+def _coherent(option: str) -> Interaction:
+    tables = _tables("coherent_scattering")
+    couplings, errors = tables["radiative"], tables["relative_error"]
+    flavours = {s: ("nu_mu", "nu_tau") if "nu_x" in s else ("nu_e",) for s in SPECIES}
+    if option == "tree":
+        sin2 = _tables("weak_couplings")["sin2_theta_w"]["at_zero"]
+        neutron, protons = 1.0, dict.fromkeys(flavours, (4 * sin2 - 1,))
+    else:
+        neutron = -2 * couplings["neutron"]
+        protons = {s: tuple(-2 * couplings["proton"][f] for f in flavours[s]) for s in SPECIES}
+    inputs = CoherentInputs(
+        neutron_charge=neutron,
+        proton_charges=protons,
+        **tables["helm"],
+        light_radii_fm={entry["nucleus"]: entry["radius_fm"] for entry in tables["light"].values()},
+        radius_error=errors["radius"],
+        other_error=errors["other"][option],
+    )
+    return coherent_scattering(inputs)
 
 
 def _proton(option: str) -> Interaction:
@@ -167,6 +191,7 @@ _BUILDERS: Mapping[str, Callable[[str], Interaction]] = MappingProxyType(
         "carbon-13-to-nitrogen-13": _levels(
             "carbon-13-to-nitrogen-13", levels.carbon_13_to_nitrogen
         ),
+        "coherent-scattering": _coherent,
         "electron-scattering": _electron,
         "inverse-beta-decay": _inverse_beta,
         "oxygen-16-excited": _oxygen(oxygen.excited),

@@ -24,6 +24,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
+from tenkpc.errors import InputError
 from tenkpc.species import index
 
 Floats = NDArray[np.float64]
@@ -31,7 +32,12 @@ OfEnergy = Callable[[Floats], Floats]
 
 HIGHEST_ENERGY_MEV = 200.0
 # words for what is left of a lead particle in a detector; a positron's gammas are not singled out
-SEEN_AS = {"electron": "electron", "positron": "positron", "gamma": "gamma rays"}
+SEEN_AS = {
+    "electron": "electron",
+    "positron": "positron",
+    "gamma": "gamma rays",
+    "proton": "proton recoil",
+}
 
 
 def piecewise(energy_mev: Floats, knots_mev: Sequence[float], values: Sequence[float]) -> Floats:
@@ -87,7 +93,7 @@ class FinalState:
         its threshold.
     lead
         the particle that carries the neutrino's energy: ``"electron"``, ``"positron"``,
-        ``"gamma"``, ``"proton"`` …
+        ``"gamma"``, ``"proton"``, or a nucleus such as ``"Ar-40"``.
     deposit
         how the lead particle's kinetic energy depends on the neutrino's.
     extras
@@ -124,7 +130,7 @@ class FinalState:
     @property
     def seen_as(self) -> str:
         """What a detector that sees the lead particle sees of it, in words."""
-        first = SEEN_AS.get(self.lead, f"{self.lead} recoil")
+        first = SEEN_AS.get(self.lead, "nuclear recoil")
         if self.neutrons:
             return f"{first}, then neutron capture"
         if self.delayed:
@@ -145,6 +151,16 @@ class Reference:
 
 
 @dataclass(frozen=True)
+class Nucleus:
+    """A nucleus as a target: its name such as ``"Ar-40"``, Z, A, and its mass without electrons."""
+
+    name: str
+    protons: int
+    nucleons: int
+    mass_mev: float
+
+
+@dataclass(frozen=True)
 class Interaction:
     """One interaction of neutrinos with one kind of target.
 
@@ -155,13 +171,17 @@ class Interaction:
     equation
         the reaction as people write it, such as ``ν̄e + p → e⁺ + n``.
     target
-        ``"electron"`` or a nuclide such as ``"H-1"``.
+        ``"electron"``, a nuclide such as ``"H-1"``, or an element such as ``"Pb"`` whose atoms
+        are all taken to react alike.
     threshold_mev
         lowest neutrino energy at which the reaction is open.
     references
         sources of the cross section.
     branches
         final states by species; a species that is missing is closed.
+    of_nucleus
+        for a reaction of every nucleus, what makes it that of one, or None where it has no
+        place; such a reaction has no final states of its own.
     """
 
     key: str
@@ -170,9 +190,32 @@ class Interaction:
     threshold_mev: float
     references: tuple[Reference, ...]
     branches: Mapping[str, tuple[FinalState, ...]]
+    of_nucleus: Callable[[Nucleus], Interaction | None] | None = None
+
+    def on(self, nucleus: Nucleus) -> Interaction | None:
+        """Give the reaction on one nucleus; None where that is no target of it.
+
+        Raises
+        ------
+        InputError
+            where the reaction has a target of its own already.
+        """
+        if self.of_nucleus is None:
+            message = f"{self.key} is a reaction of {self.target}, not of a nucleus to be chosen"
+            raise InputError(message)
+        return self.of_nucleus(nucleus)
 
     def final_states(self, species: str) -> tuple[FinalState, ...]:
-        """Final states open to a species; empty where there are none."""
+        """Final states open to a species; empty where there are none.
+
+        Raises
+        ------
+        InputError
+            where the reaction needs a nucleus first, see `on`.
+        """
+        if self.of_nucleus is not None:
+            message = f"{self.key} is a reaction of every nucleus: choose one with on(nucleus)"
+            raise InputError(message)
         index(species)
         return self.branches.get(species, ())
 

@@ -145,16 +145,19 @@ def gamma_cm2(neutrino_mev: ArrayLike, scale_cm2: float, threshold_mev: float) -
     return result
 
 
-def _charged(inputs: OxygenInputs, species: str, lead: str, **words: str) -> Interaction:
+def _charged(
+    inputs: OxygenInputs, species: str, *, lead: str, key: str, equation: str
+) -> Interaction:
     groups = inputs.groups[species]
     error = partial(piecewise, knots_mev=inputs.error_mev, values=inputs.charged_error)
     states = tuple(_group(group, place, lead, error) for place, group in enumerate(groups))
     return Interaction(
+        key=key,
+        equation=equation,
         target=ISOTOPE,
         threshold_mev=states[0].window_mev[0],
         references=(FIT,),
         branches={species: states},
-        **words,
     )
 
 

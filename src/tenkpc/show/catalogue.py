@@ -13,6 +13,7 @@ from tenkpc import interactions
 from tenkpc.detector import gallery, materials
 from tenkpc.detector.detector import Detector
 from tenkpc.errors import UnknownNameError
+from tenkpc.interactions.base import Interaction
 from tenkpc.rendering import (
     Facts,
     Page,
@@ -32,6 +33,8 @@ from tenkpc.species import SPECIES, SYMBOLS
 QUOTED_MEV = np.array([10.0, 20.0, 40.0])
 # errors from here on are said as factors
 FACTOR_FROM = 0.3
+# nuclei on which a reaction of every nucleus is quoted
+EXAMPLES = ("O-16", "Ar-40", "Ge-74", "Xe-132", "Pb-208")
 QUOTED = tuple(f"{energy:g} MeV" for energy in QUOTED_MEV)
 
 
@@ -93,29 +96,38 @@ def _material_line(name: str) -> str:
 
 def _interaction(key: str) -> Page:
     interaction = interactions.by_key(key)
+    made = [interaction] if interaction.of_nucleus is None else list(_examples(interaction))
     rows = [
         ("target", interaction.target),
         ("threshold", f"{interaction.threshold_mev:.4g} MeV"),
-        ("seen as", "; ".join(_ways(key))),
+        ("seen as", "; ".join(_ways(made[0]))),
         ("options", ", ".join(interactions.OPTIONS.get(key, ())) or "none"),
     ]
     references = [Paragraph(f"{r}: {r.used_for}", small=True) for r in interaction.references]
     table = Table(
-        tuple(_cross_sections(key)),
+        tuple(row for reaction in made for row in _cross_sections(reaction)),
         ("σ per target in cm²", *QUOTED, f"1σ at {QUOTED[1]}", "window"),
     )
     return [Paragraph(interaction.equation), Facts(tuple(rows)), Rule(), table, Rule(), *references]
 
 
-def _ways(key: str) -> tuple[str, ...]:
+def _examples(interaction: Interaction) -> Iterator[Interaction]:
+    """Give a reaction of every nucleus on a few of them."""
+    for name in EXAMPLES:
+        made = interaction.on(materials.nucleus(name))
+        if made is not None:
+            yield made
+
+
+def _ways(interaction: Interaction) -> tuple[str, ...]:
     """Ways in which a detector may see an interaction, each once."""
-    branches = interactions.by_key(key).branches.values()
+    branches = interaction.branches.values()
     return tuple(dict.fromkeys(state.seen_as for states in branches for state in states))
 
 
-def _cross_sections(key: str) -> Iterator[Row]:
+def _cross_sections(interaction: Interaction) -> Iterator[Row]:
     """σ, its error at the middle energy and its window, for kinds that react alike together."""
-    branches = interactions.by_key(key).branches
+    branches = interaction.branches
     alike: dict[tuple[int, ...], list[str]] = {}
     for species in (s for s in SPECIES if s in branches):
         alike.setdefault(tuple(map(id, branches[species])), []).append(species)

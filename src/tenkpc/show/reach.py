@@ -128,19 +128,27 @@ class Curve:
     high: Floats
     window_mev: float
 
+    def plus(self, other: Curve) -> Curve:
+        """Add the same interaction in other targets, whose errors go together with these."""
+        return Curve(
+            self.equation,
+            self.middle + other.middle,
+            self.low + other.low,
+            self.high + other.high,
+            min(self.window_mev, other.window_mev),
+        )
+
 
 def _curves(forecast: Forecast) -> list[Curve]:
-    """Interactions of a forecast that are open below 100 MeV, volumes taken together."""
+    """Interactions of a forecast that are open below 100 MeV, volumes and nuclei together."""
     chosen = exposures.choices(forecast.detector, forecast.interactions)
-    targets: dict[str, float] = {}
-    by_key: dict[str, Interaction] = {}
+    kilotons = forecast.detector.mass_kg / KG_PER_KT
+    made: dict[str, Curve] = {}
     for exposure in exposures.exposures(forecast.detector, chosen, None):
         key = exposure.interaction.key
-        by_key[key] = exposure.interaction
-        targets[key] = targets.get(key, 0.0) + exposure.targets
-    kilotons = forecast.detector.mass_kg / KG_PER_KT
-    made = [_curve(by_key[key], count / kilotons) for key, count in targets.items()]
-    return [curve for curve in made if curve.middle.any()]
+        curve = _curve(exposure.interaction, exposure.targets / kilotons)
+        made[key] = curve if key not in made else made[key].plus(curve)
+    return [curve for curve in made.values() if curve.middle.any()]
 
 
 def _curve(interaction: Interaction, targets: float) -> Curve:
