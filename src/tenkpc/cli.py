@@ -11,7 +11,7 @@ from typing import TYPE_CHECKING, Any
 
 import click
 
-from tenkpc import __version__
+from tenkpc import __version__, templates
 from tenkpc.errors import ComputationError, InputError, suggestion
 
 if TYPE_CHECKING:
@@ -136,15 +136,20 @@ def check(file: str, as_json: bool) -> None:
 @main.command()
 @click.argument("kind", type=click.Choice(FILES))
 @click.argument("file")
-def new(kind: str, file: str) -> None:
+@click.option("--medium", type=click.Choice(templates.MEDIA), help="What a detector sees by.")
+def new(kind: str, file: str, medium: str | None) -> None:
     """Write FILE to begin with: a valid detector or burst, every key explained."""
-    from tenkpc import templates
-
     place = Path(file)
     if place.exists():
         message = f"{file}: there is such a file already, and it is left as it is"
         raise InputError(message)
-    _write(place, templates.text(kind), "FILE")
+    if medium and kind != "detector":
+        message = f"--medium: only a detector has one, not a {kind}"
+        raise InputError(message)
+    text = templates.detector(medium or templates.MEDIA[0])
+    if kind == "burst":
+        text = templates.burst()
+    _write(place, text, "FILE")
     click.echo(f"{file}: written; tenkpc check {file} says what it describes")
 
 

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from dataclasses import dataclass
 from typing import Annotated, Any, TypeAlias
 
@@ -15,6 +16,20 @@ BIRKS_PER_LENGTH = "cm/MeV"
 BIRKS_UNITS = (BIRKS_PER_LENGTH, "g/cm^2/MeV")
 # scintillators have about 0.01 (common practice); ten times as much is a slip of a unit
 LARGEST_BIRKS = 0.1
+# letters behind an energy that say whose it is: of a nucleus that recoils, or of the electron
+# that would give the same signal
+_LABELLED = re.compile(r"(?P<energy>.*[A-Za-z]?eV)(?P<label>nr|ee)\s*")
+_QUANTA = re.compile(r"(?P<number>\d+)\s+(?P<quanta>photo)?electrons?\s*")
+_YIELD = re.compile(
+    r"(?P<number>\S+)\s+(?P<quanta>photoelectrons|electrons)\s*/\s*"
+    r"(?P<energy>\w*eV)(?P<label>nr|ee)\s*"
+)
+
+
+def labelled(value: object) -> tuple[object, str]:
+    """Split an energy such as ``"3 keVnr"`` into what pint can read, and its label."""
+    found = _LABELLED.fullmatch(value) if isinstance(value, str) else None
+    return (found["energy"], found["label"]) if found else (value, "")
 
 
 class _Converted:
@@ -83,6 +98,87 @@ class InUnit(_Converted):
 
 
 @dataclass(frozen=True)
+class LabelledEnergy(InUnit):
+    """An energy that may say whose it is, ``"3 keVnr"``; see `labelled`."""
+
+    def convert(self, value: object) -> float:
+        """Turn a text into a float in the unit; whether its label fits is for others to say."""
+        return super().convert(labelled(value)[0])
+
+
+@dataclass(frozen=True)
+class Cut:
+    """A threshold: an energy in MeV with its label, or a number of quanta with their name."""
+
+    value: float
+    label: str = ""
+    quanta: str = ""
+
+
+@dataclass(frozen=True)
+class Threshold(_Converted):
+    """An energy, or a number of ``electrons`` or ``photoelectrons``."""
+
+    example: str = "5 MeV"
+
+    def convert(self, value: object) -> Cut:
+        """Turn a text into a cut."""
+        found = _QUANTA.fullmatch(value) if isinstance(value, str) else None
+        if found is None:
+            return Cut(
+                LabelledEnergy("MeV", self.example, minimum=0.0).convert(value), labelled(value)[1]
+            )
+        number = int(found["number"])
+        if number < 1:
+            message = f"expected at least 1; found {value!r}"
+            raise InputError(message)
+        return Cut(number, quanta=f"{found['quanta'] or ''}electrons")
+
+    def json_schema(self) -> dict[str, Any]:
+        """Give a text with examples."""
+        return {"type": "string", "examples": [self.example, "3 keVnr", "4 electrons"]}
+
+
+@dataclass(frozen=True)
+class QuantaPerEnergy:
+    """So many quanta for each MeV of an energy of a label."""
+
+    per_mev: float
+    quanta: str
+    label: str
+
+
+@dataclass(frozen=True)
+class QuantaYield(_Converted):
+    """A yield such as ``"6.5 photoelectrons/keVee"``."""
+
+    example: str = "6.5 photoelectrons/keVee"
+
+    def convert(self, value: object) -> QuantaPerEnergy:
+        """Turn a text into a yield."""
+        found = _YIELD.fullmatch(value) if isinstance(value, str) else None
+        if found is None:
+            message = (
+                f"expected a number of electrons or photoelectrons per keVnr or keVee, such as "
+                f"{self.example!r}; found {value!r}"
+            )
+            raise InputError(message)
+        one = InUnit("MeV", "1 keV", above=0.0).convert(f"1 {found['energy']}")
+        try:
+            number = float(found["number"])
+        except ValueError:
+            number = 0.0
+        if not 0 < number < float("inf"):
+            message = f"expected a number above zero; found {value!r}"
+            raise InputError(message)
+        return QuantaPerEnergy(number / one, found["quanta"], found["label"])
+
+    def json_schema(self) -> dict[str, Any]:
+        """Give a text with an example."""
+        return {"type": "string", "examples": [self.example]}
+
+
+@dataclass(frozen=True)
 class BirksConstant(_Converted):
     """Birks' constant, which comes in two dimensions: a float and the unit it is in.
 
@@ -125,8 +221,10 @@ class Share(_Converted):
 
 
 Mass: TypeAlias = Annotated[float, InUnit("kg", "12 kt", above=0.0)]
-Energy: TypeAlias = Annotated[float, InUnit("MeV", "5 MeV", minimum=0.0)]
+Energy: TypeAlias = Annotated[float, LabelledEnergy("MeV", "5 MeV", minimum=0.0)]
 Rate: TypeAlias = Annotated[float, InUnit("1/s", "40 /day", minimum=0.0)]
 Birks: TypeAlias = Annotated[tuple[float, str], BirksConstant()]
 Density: TypeAlias = Annotated[float, InUnit("g/cm^3", "0.86 g/cm^3", above=0.0)]
 Fraction: TypeAlias = Annotated[float, Share()]
+ThresholdCut: TypeAlias = Annotated[Cut, Threshold()]
+QuantumYield: TypeAlias = Annotated[QuantaPerEnergy, QuantaYield()]

@@ -133,7 +133,7 @@ def test_eight_mistakes_are_reported_in_one_go():
         ({"interactions.inverse-beta-decay": "tree"}, "there are: none"),
         ({"response.energy": "visible"}, "reports total or kinetic energy"),
         ({"response.energy": "visble"}, "did you mean 'visible'"),
-        ({"response.birks": "0.01 cm/MeV"}, "nothing to quench"),
+        ({"response.birks": "0.01 cm/MeV"}, "does not belong to a cherenkov"),
         ({"volume": []}, "at least one volume"),
     ],
 )

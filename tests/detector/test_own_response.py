@@ -60,7 +60,7 @@ def test_the_page_names_both_thresholds():
     words = " ".join(repr(made).split())
     assert "above 5 MeV of total energy in inner, above 9 MeV of total energy in outer" in words
     lines = [line.split("  ")[-1].strip() for line in made.explain().splitlines()]
-    assert "9 MeV total energy (detector)" in lines
+    assert "above 9 MeV of total energy (detector)" in lines
     cut = made.within(energy_above="12 MeV")
     assert "observed above 12 MeV of total energy" in " ".join(repr(cut).split())
 
@@ -126,7 +126,7 @@ def test_structure_that_hardly_sees():
         (
             'efficiency = "40 %"',
             'birks = "0.01 cm/MeV"',
-            "volume.outer.response.birks: .*nothing to",
+            "volume.outer.response.birks: does not belong",
         ),
     ],
 )

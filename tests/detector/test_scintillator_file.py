@@ -31,7 +31,7 @@ def test_the_gallery_file_says_what_it_means():
     assert [source.name for source in HALL.backgrounds] == ["outside gammas", "cosmogenic decays"]
     assert HALL.backgrounds[0].rate_hz == pytest.approx(40 / 86400)
     assert (HALL.mass_error, HALL.efficiency_error, HALL.scale_error) == (0.01, 0.015, 0.005)
-    assert HALL.proton_light == "Birks' law with 0.0104 cm/MeV"
+    assert HALL.quenching == "Birks' law with 0.0104 cm/MeV"
 
 
 def test_birks_comes_in_two_dimensions():
@@ -69,7 +69,7 @@ def test_a_table_of_light(tmp_path):
     assert made.volumes[0].response.visible("proton", 0.25) == pytest.approx(0.05)
     slope = (6 - 0.25) / 9
     assert made.volumes[0].response.visible("proton", 20.0) == pytest.approx(6 + 10 * slope)
-    assert made.proton_light == "table light.csv"
+    assert made.quenching == "table light.csv"
     (tmp_path / "light.csv").write_text("kinetic_mev,visible_mev\n1,0.5\n2,0.4\n")
     with pytest.raises(FileError, match="ascend from zero"):
         Detector.parse(text, folder=str(tmp_path))
@@ -83,7 +83,7 @@ def test_no_quenching_has_to_be_written():
         changed('birks = "0.0104 cm/MeV"\n', "")
     with pytest.raises(FileError, match="found birks and quenching"):
         changed("birks =", 'quenching = "none"\nbirks =')
-    with pytest.raises(FileError, match="expected one of none"):
+    with pytest.raises(FileError, match="expected one of lindhard, none"):
         changed('birks = "0.0104 cm/MeV"', 'quenching = "lots"')
 
 

@@ -18,7 +18,8 @@ BUDGET = FORECAST.budget
 
 def test_every_cause_has_a_row():
     """Chance, each interaction that counts, what the file says of the detector, both angles."""
-    causes = ["chance", *FORECAST.keys, "mass", "efficiency", "energy scale"]
+    seen = [key for key in FORECAST.keys if FORECAST.counts.loc[key, "counted"] > 0]
+    causes = ["chance", *seen, "mass", "efficiency", "energy scale"]
     assert list(BUDGET.index) == [*causes, "sin2_theta12", "sin2_theta13"]
     assert set(BUDGET["kind"]) == {"chance", "cross section", "detector", "mixing angle"}
     assert (BUDGET[["fall", "rise"]] > 0).all(axis=None)
@@ -27,7 +28,7 @@ def test_every_cause_has_a_row():
     assert BUDGET["fall_percent"].to_numpy() == pytest.approx(per_cent.to_numpy())
 
 
-@pytest.mark.parametrize("key", FORECAST.keys)
+@pytest.mark.parametrize("key", [key for key in FORECAST.keys if key in BUDGET.index])
 def test_a_cross_section_row_is_its_factor(key):
     """An error that is the same at all energies is a factor exp(±error) on the row's counts."""
     row, counted = BUDGET.loc[key], FORECAST.counts.loc[key, "counted"]

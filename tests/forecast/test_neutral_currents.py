@@ -49,16 +49,16 @@ def test_recoils_without_quenching_would_be_many_times_as_many(hardness, expecte
 
 
 def test_rows_that_are_not_seen_are_in_no_total():
-    """Recoil protons in water react, and are counted nowhere."""
+    """Recoil protons and nuclei in water react, and are counted nowhere."""
     made = Forecast(TANK, ORDINARY, distance="10 kpc")
-    row = made.counts.loc["proton-scattering"]
-    assert row["reactions"] > 1000
-    assert row["counted"] == row["above_threshold"] == 0
-    seen = made.counts.drop("proton-scattering")
+    unseen = ["coherent-scattering", "proton-scattering"]
+    for key in unseen:
+        row = made.counts.loc[key]
+        assert row["reactions"] > 1000
+        assert row["counted"] == row["above_threshold"] == 0
+        assert set(made.breakdown.xs(key, level="interaction")["seen_as"]) == {"not seen"}
+    seen = made.counts.drop(unseen)
     assert made.chain[0] == pytest.approx(seen["reactions"].sum())
-    assert set(made.breakdown.xs("proton-scattering", level="interaction")["seen_as"]) == {
-        "not seen"
-    }
 
 
 def test_tables_by_what_is_seen_hold_the_same_events():

@@ -56,5 +56,5 @@ def test_small_rows_are_collapsed():
 
 
 def test_what_the_medium_does_not_see_is_named():
-    """Recoil protons give no Cherenkov light: one line says so, and no total holds them."""
-    assert "not seen: proton-scattering" in page()
+    """Recoils give no Cherenkov light: one line says so, and no total holds them."""
+    assert "not seen: coherent-scattering, proton-scattering" in page()

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Sequence
 from dataclasses import dataclass, field
 from functools import partial
@@ -10,12 +11,13 @@ from types import MappingProxyType
 from typing import Any
 
 from tenkpc import data
-from tenkpc.detector import materials
+from tenkpc.detector import materials, recoils
 from tenkpc.detector.background import SHAPES, Background, lies_above
 from tenkpc.detector.detector_file import COMPOSITIONS, BackgroundKeys, DetectorKeys, VolumeKeys
 from tenkpc.detector.materials import Composition
 from tenkpc.detector.media import EVENT_OFFSETS_MEV, MEDIA
-from tenkpc.detector.quenching import Light, Plain, Quenched, quenched_protons
+from tenkpc.detector.quenching import Light, Plain, quenched_protons
+from tenkpc.detector.recoils import Lights, Worth
 from tenkpc.detector.response import Curve, Resolution, Response
 from tenkpc.detector.response_file import EfficiencyKeys, ResponseKeys, joined
 from tenkpc.documents import Document
@@ -57,7 +59,7 @@ def volumes(keys: DetectorKeys, document: Document) -> tuple[Volume, ...]:
         words, composition = _composition(volume)
         given = response_keys(keys, volume)
         own = ("volume", volume.name, "response") if volume.response else ("response",)
-        light = _proton_light(given, volume, composition, document)
+        light = _lights(given, volume, composition, document)
         if (given, light) not in known:
             known[given, light] = _response(given, own, light, unsure, document)
         stated = volume.response.model_fields_set if volume.response else ()
@@ -75,8 +77,8 @@ def volumes(keys: DetectorKeys, document: Document) -> tuple[Volume, ...]:
 
 
 def common(keys: DetectorKeys, document: Document) -> Response:
-    """Build what `[response]` says of the whole detector; light of protons belongs to volumes."""
-    return _response(keys.response, ("response",), None, keys.uncertainty.energy_scale, document)
+    """Build what `[response]` says of the whole detector; light of recoils belongs to volumes."""
+    return _response(keys.response, ("response",), (), keys.uncertainty.energy_scale, document)
 
 
 def response_keys(keys: DetectorKeys, volume: VolumeKeys) -> ResponseKeys:
@@ -119,42 +121,59 @@ def _composition(keys: VolumeKeys) -> tuple[str, Composition]:
 def _response(
     given: ResponseKeys,
     path: tuple[str, ...],
-    protons: Light | None,
+    lights: Lights,
     scale_error: float,
     document: Document,
 ) -> Response:
     efficiency = _efficiency(given, path, document)
     width, medium = given.resolution, MEDIA[given.medium]
+    scale = medium.scales[given.kind]
     of_truth = given.efficiency is not None and given.efficiency.of == "true"
-    light = dict(medium.light) if protons is None else {**medium.light, "proton": protons}
+    light = {**medium.light, **{particle: of.observed for particle, of in lights}}
     return Response(
         kind=given.kind,
+        scale=scale,
         light=MappingProxyType(light),
         event_offset_mev=EVENT_OFFSETS_MEV[given.kind],
         resolution=Resolution(
-            width.stochastic, width.constant, width.noise, linear=width.combine == "linear"
+            # a of σ/E = a/√E is for energies in the unit in which they are written
+            width.stochastic * math.sqrt(scale.mev),
+            width.constant,
+            width.noise,
+            linear=width.combine == "linear",
         ),
         threshold_mev=_threshold_mev(given),
         efficiency=Curve() if of_truth else efficiency,
         true_efficiency=efficiency if of_truth else Curve(),
         live_fraction=given.live_fraction,
         scale_error=scale_error,
+        acceptance=recoils.acceptance(given, lights, path, document),
+        threshold_beside=recoils.beside(given),
     )
 
 
 def _threshold_mev(keys: ResponseKeys) -> float:
-    """Threshold in the observed kind of energy."""
-    if keys.threshold is None:
+    """Threshold in the observed kind of energy; none where it is of another kind."""
+    if keys.threshold is None or recoils.is_beside(keys):
         return 0.0
     given_in = keys.threshold.of or keys.kind
     shift = EVENT_OFFSETS_MEV[keys.kind] - EVENT_OFFSETS_MEV[given_in]
-    return max(keys.threshold.value + shift, 0.0)
+    return max(keys.threshold.value.value + shift, 0.0)
+
+
+def _lights(
+    keys: ResponseKeys, volume: VolumeKeys, composition: Composition, document: Document
+) -> Lights:
+    """What slow particles are worth in a volume; none where they are not seen."""
+    if keys.medium == "recoil":
+        return recoils.lights(keys, composition.nuclei, document)
+    protons = _proton_light(keys, volume, composition, document)
+    return () if protons is None else (("proton", Worth(protons, protons)),)
 
 
 def _proton_light(
     keys: ResponseKeys, volume: VolumeKeys, composition: Composition, document: Document
 ) -> Light | None:
-    """What the light of protons is worth in a volume; None where they are not seen."""
     if keys.birks is not None:
         constant, unit = keys.birks
         density = _density(volume) if unit == BIRKS_PER_LENGTH else 1.0
@@ -165,29 +184,14 @@ def _proton_light(
         return None
     if keys.quenching.file is None:
         return Plain()
-    return _light_table(keys.quenching.file, keys.quenching.beyond == "extend", document)
+    return recoils.table(
+        keys.quenching, ("kinetic_mev", "visible_mev"), 1.0, FASTEST_PROTON_MEV, document
+    )
 
 
 def _density(keys: VolumeKeys) -> float:
     """Density in g/cm³: as given, or that of the named material."""
     return keys.density or materials.named(keys.material or "").density_g_cm3
-
-
-def _light_table(file: str, extend: bool, document: Document) -> Quenched:
-    columns = document.columns(file, ("kinetic_mev", "visible_mev"))
-    kinetic, visible = columns["kinetic_mev"], columns["visible_mev"]
-    problem = ""
-    if not _ascending(kinetic) or not _ascending(visible) or kinetic[0] < 0 or visible[0] < 0:
-        problem = "expected kinetic and visible energies that ascend from zero"
-    elif kinetic[-1] < FASTEST_PROTON_MEV and not extend:
-        problem = (
-            f"the table ends at {kinetic[-1]:g} MeV and protons have up to "
-            f'{FASTEST_PROTON_MEV:g} MeV; say beyond = "extend" to go on with its last slope'
-        )
-    if problem:
-        raise document.refused([(("response", "quenching"), problem)])
-    start = [] if kinetic[0] == 0 else [0.0]
-    return Quenched((*start, *kinetic), (*start, *visible))
 
 
 def _efficiency(keys: ResponseKeys, path: tuple[str, ...], document: Document) -> Curve:

@@ -39,8 +39,8 @@ class Detector:
         events recorded without a burst.
     interactions
         switches, factors and options of interactions.
-    proton_light
-        words for how the light of slow protons is reckoned.
+    quenching
+        words for how the light of slow protons and nuclei is reckoned.
     mass_error, efficiency_error, scale_error
         1σ of mass, efficiency and energy scale, relative.
     stated
@@ -55,7 +55,7 @@ class Detector:
     response: Response = field(compare=False, default_factory=Response)
     backgrounds: tuple[Background, ...] = field(compare=False, default=())
     interactions: Mapping[str, bool | float | str] = field(compare=False, default_factory=dict)
-    proton_light: str = field(compare=False, default="")
+    quenching: str = field(compare=False, default="")
     mass_error: float = field(compare=False, default=0.0)
     efficiency_error: float = field(compare=False, default=0.0)
     scale_error: float = field(compare=False, default=0.0)
@@ -103,7 +103,7 @@ class Detector:
             response=assembly.common(keys, whole),
             backgrounds=assembly.backgrounds(keys, whole),
             interactions=MappingProxyType(dict(keys.interactions)),
-            proton_light=_proton_light(keys.response),
+            quenching=_quenching(keys.response),
             mass_error=unsure.mass,
             efficiency_error=unsure.efficiency,
             scale_error=unsure.energy_scale,
@@ -150,10 +150,12 @@ class Detector:
         return f"<Detector {self.title!r} from {self.origin}>"
 
 
-def _proton_light(keys: ResponseKeys) -> str:
+def _quenching(keys: ResponseKeys) -> str:
     if keys.birks is not None:
         constant, unit = keys.birks
         return f"Birks' law with {constant:g} {unit}"
     if keys.quenching is None:
-        return "none: the medium does not see them"
+        return "none: not needed" if keys.medium == "recoil" else "none: the medium sees none"
+    if keys.quenching.value == "lindhard":
+        return f"Lindhard's formula with k {keys.lindhard_k or 'of each nucleus'}"
     return f"table {keys.quenching.file}" if keys.quenching.file else "not quenched"

@@ -11,9 +11,8 @@ from typing import Annotated, Any, Literal
 from pydantic import Field
 
 from tenkpc import interactions
-from tenkpc.detector import materials
+from tenkpc.detector import energy_rules, materials
 from tenkpc.detector.background import SHAPES
-from tenkpc.detector.media import MEDIA
 from tenkpc.detector.response_file import OwnResponseKeys, ResponseKeys, joined
 from tenkpc.errors import InputError, suggestion
 from tenkpc.fields import BIRKS_PER_LENGTH, BirksConstant, Density, Energy, Fraction, Mass, Rate
@@ -123,6 +122,8 @@ class DetectorKeys(Strict):
             except InputError as error:
                 yield ("interactions", key), str(error)
         response = raw.get("response")
+        if isinstance(response, dict) and (scale := energy_rules.scale_of(response)):
+            yield from energy_rules.labels(_background_energies(raw), scale)
         for place, volume in enumerate(_tables(raw, "volume")):
             own = volume.get("response", {})
             if isinstance(response, dict) and isinstance(own, dict):
@@ -164,6 +165,14 @@ def _tables(raw: Mapping[str, Any], key: str) -> list[Mapping[str, Any]]:
     return [table if isinstance(table, dict) else {} for table in found]
 
 
+def _background_energies(raw: Mapping[str, Any]) -> Iterator[Any]:
+    """Give every energy of the backgrounds with its path."""
+    for place, table in enumerate(_tables(raw, "background")):
+        for key in ("from", "to", "mean", "width"):
+            if key in table:
+                yield ("background", place, key), table[key]
+
+
 def _twice(key: str, tables: list[Mapping[str, Any]]) -> Iterator[Any]:
     seen: set[str] = set()
     for place, table in enumerate(tables):
@@ -181,21 +190,15 @@ def _responses(
     if own:
         for path, message in ResponseKeys.cross_rules(whole):
             yield ("volume", place, "response", *path), message
-        kinds = [_kind(tables) for tables in (common, whole)]
-        if None not in kinds and kinds[0] != kinds[1]:
+        kinds = [energy_rules.kind_of(tables) for tables in (common, whole)]
+        scales = [energy_rules.scale_of(tables) for tables in (common, whole)]
+        if None not in kinds and (kinds[0], scales[0]) != (kinds[1], scales[1]):
             yield (
                 ("volume", place, "response"),
                 f"all volumes report one kind of energy; found {kinds[1]} here and {kinds[0]}",
             )
     if "birks" in whole:
         yield from _quenchable(place, volume, whole["birks"])
-
-
-def _kind(response: Mapping[str, Any]) -> str | None:
-    medium = response.get("medium")
-    if not isinstance(medium, str) or medium not in MEDIA:
-        return None
-    return str(response.get("energy", MEDIA[medium].kinds[0]))
 
 
 def _quenchable(place: int, table: Mapping[str, Any], birks: object) -> Iterator[Any]:

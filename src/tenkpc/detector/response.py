@@ -21,7 +21,9 @@ import numpy as np
 from numpy.typing import NDArray
 from scipy.special import ndtr
 
+from tenkpc.detector.quanta import Acceptance
 from tenkpc.detector.quenching import Light
+from tenkpc.detector.scales import MEV, Scale
 
 Floats = NDArray[np.float64]
 
@@ -99,7 +101,9 @@ class Response:
     Attributes
     ----------
     kind
-        the observed kind of energy: ``"total"``, ``"kinetic"`` or ``"visible"``.
+        the observed kind of energy: ``"total"``, ``"kinetic"``, ``"visible"`` or ``"recoil"``.
+    scale
+        how energies of that kind are written.
     light
         for every particle that the medium sees, what its kinetic energy is worth.
     event_offset_mev
@@ -113,9 +117,15 @@ class Response:
         share of the time in which the detector records.
     scale_error
         1σ of the energy scale, relative.
+    acceptance
+        for particles with a threshold that is none of the observed energy, the share kept
+        against their kinetic energy, before resolution.
+    threshold_beside
+        words for that threshold.
     """
 
     kind: str = "total"
+    scale: Scale = MEV
     light: Mapping[str, Light] = field(default_factory=lambda: MappingProxyType({}))
     event_offset_mev: float = 0.0
     resolution: Resolution = Resolution()
@@ -124,6 +134,13 @@ class Response:
     true_efficiency: Curve = Curve()
     live_fraction: float = 1.0
     scale_error: float = 0.0
+    acceptance: Mapping[str, Acceptance] = field(default_factory=lambda: MappingProxyType({}))
+    threshold_beside: str = ""
+
+    def accepted(self, particle: str, kinetic_mev: Floats) -> Floats:
+        """Share of events that passes thresholds beside that of the observed energy."""
+        acceptance = self.acceptance.get(particle)
+        return np.ones_like(kinetic_mev) if acceptance is None else acceptance.kept(kinetic_mev)
 
     def visible(self, particle: str, kinetic_mev: float) -> float | None:
         """What a particle adds to the energy of an event, MeV; None where it is not seen."""
@@ -143,7 +160,10 @@ class Response:
     @property
     def knots_mev(self) -> tuple[float, ...]:
         """Energies at which the response is not smooth."""
-        knots = self.efficiency.knots_mev + self.true_efficiency.knots_mev
+        knots = {*self.efficiency.knots_mev, *self.true_efficiency.knots_mev}
+        for particle, acceptance in self.acceptance.items():
+            visible = self.light[particle].visible(np.array(acceptance.knots_mev))
+            knots.update((visible + self.event_offset_mev).tolist())
         return tuple(sorted({self.threshold_mev, self.event_offset_mev, *knots}))
 
     def above_threshold(self, low_mev: Floats, high_mev: Floats) -> Floats:

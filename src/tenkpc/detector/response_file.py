@@ -12,12 +12,13 @@ from typing import Annotated, Any, Literal
 
 from pydantic import BeforeValidator, Field
 
+from tenkpc.detector import energy_rules
 from tenkpc.detector.media import MEDIA
-from tenkpc.fields import Birks, Energy, Fraction
+from tenkpc.fields import Birks, Energy, Fraction, QuantumYield, ThresholdCut
 from tenkpc.textfiles import Strict
 
 Problems = Iterable[tuple[tuple[str | int, ...], str]]
-Kind = Literal["kinetic", "total", "visible"]
+Kind = Literal["kinetic", "recoil", "total", "visible"]
 
 
 def written_out(value: Any) -> Any:
@@ -26,9 +27,9 @@ def written_out(value: Any) -> Any:
 
 
 class ThresholdKeys(Strict):
-    """`threshold`: an energy, or an energy and the kind of energy it is given in."""
+    """`threshold`: an energy or a number of quanta, or an energy and the kind it is given in."""
 
-    value: Energy
+    value: ThresholdCut
     of: Kind | None = None
 
 
@@ -59,59 +60,60 @@ class EfficiencyKeys(Strict):
 
 
 class QuenchingKeys(Strict):
-    """`quenching`: a table of the light of protons, or the word that there is none."""
+    """`quenching`: a table of the light of recoils, or the word for how it is reckoned."""
 
-    value: Literal["none"] | None = None
+    value: Literal["lindhard", "none"] | None = None
     file: str | None = None
     beyond: Literal["error", "extend"] = "error"
 
     @classmethod
     def cross_rules(cls, raw: Mapping[str, Any]) -> Problems:
-        """Check that it is either a table or the word."""
+        """Check that it is either a table or a word."""
         if ("value" in raw) == ("file" in raw):
-            yield (), 'expected "none", or { file = … } with a table of kinetic and visible energy'
+            yield (), "expected a word, or { file = … } with a table of kinetic and visible energy"
+
+
+class YieldKeys(Strict):
+    """`light_yield`, `charge_yield`: quanta set free by a recoil, and the share registered."""
+
+    value: QuantumYield | None = None
+    file: str | None = None
+    beyond: Literal["error", "hold", "zero"] = "error"
+    registered: Fraction = 1.0
+
+    @classmethod
+    def cross_rules(cls, raw: Mapping[str, Any]) -> Problems:
+        """Check that it is either a value or a table."""
+        if ("value" in raw) == ("file" in raw):
+            yield (), "give one of value and file"
 
 
 class ResponseKeys(Strict):
     """`[response]`: what the instrument makes of an event."""
 
-    medium: Literal["cherenkov", "scintillator"]
+    medium: Literal["cherenkov", "recoil", "scintillator"]
     energy: Kind | None = None
     threshold: Annotated[ThresholdKeys, BeforeValidator(written_out)] | None = None
     resolution: ResolutionKeys = ResolutionKeys()
     birks: Birks | None = None
     quenching: Annotated[QuenchingKeys, BeforeValidator(written_out)] | None = None
+    lindhard_k: Annotated[float, Field(gt=0, lt=1)] | None = None
+    light_yield: Annotated[YieldKeys, BeforeValidator(written_out)] | None = None
+    charge_yield: Annotated[YieldKeys, BeforeValidator(written_out)] | None = None
+    fluctuation: Literal["poisson", "binomial"] = "poisson"
     efficiency: Annotated[EfficiencyKeys, BeforeValidator(written_out)] | None = None
     live_fraction: Fraction = 1.0
 
     @property
     def kind(self) -> str:
-        """The observed kind of energy: as given, or the medium's default."""
-        return self.energy or MEDIA[self.medium].kinds[0]
+        """The observed kind of energy: as given, or as the threshold says, or the default."""
+        label = self.threshold.value.label if self.threshold else ""
+        return self.energy or energy_rules.KINDS.get(label) or MEDIA[self.medium].kinds[0]
 
     @classmethod
     def cross_rules(cls, raw: Mapping[str, Any]) -> Problems:
         """Check what a medium can report and what it has to be told."""
-        name = raw.get("medium")
-        medium = MEDIA.get(name) if isinstance(name, str) else None
-        if medium is None:
-            return
-        threshold = raw.get("threshold")
-        of = threshold.get("of") if isinstance(threshold, dict) else None
-        for path, kind in ((("energy",), raw.get("energy")), (("threshold", "of"), of)):
-            if kind is not None and kind not in medium.kinds:
-                yield path, f"a {name} reports {' or '.join(medium.kinds)} energy; found {kind!r}"
-        given = [key for key in ("birks", "quenching") if key in raw]
-        if not medium.quenches:
-            for key in given:
-                yield (key,), f"a {name} does not see slow protons, so there is nothing to quench"
-        elif len(given) != 1:
-            found = " and ".join(given) or "neither"
-            yield (
-                (),
-                "the light of recoil protons: give birks (hydrocarbons), or quenching = "
-                f'{{ file = … }}, or quenching = "none"; found {found}',
-            )
+        return energy_rules.response(raw)
 
 
 class OwnResponseKeys(ResponseKeys):
@@ -120,7 +122,7 @@ class OwnResponseKeys(ResponseKeys):
     What is left out is as in `[response]`; a medium of its own begins anew.
     """
 
-    medium: Literal["cherenkov", "scintillator"] | None = None  # type: ignore[assignment]
+    medium: Literal["cherenkov", "recoil", "scintillator"] | None = None  # type: ignore[assignment]
 
     @classmethod
     def cross_rules(cls, raw: Mapping[str, Any]) -> Problems:

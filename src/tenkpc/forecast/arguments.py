@@ -9,7 +9,9 @@ import numpy as np
 from numpy.typing import NDArray
 
 from tenkpc import units
+from tenkpc.detector.scales import MEV, Scale
 from tenkpc.errors import InputError
+from tenkpc.fields import labelled
 
 Floats = NDArray[np.float64]
 Quantity = Any  # a text such as "10 kpc" or a pint quantity
@@ -17,8 +19,8 @@ Window = tuple[float, float]
 
 # bins at the most: 0.1 ms steps over 80 s
 MOST_BINS = 1_000_000
-# bins of observed energy unless others are asked for, MeV: width and last edge
-BIN_WIDTH_MEV, LAST_EDGE_MEV = 2.0, 100.0
+# bins of energy at the most
+MOST_ENERGY_BINS = 10_000
 
 
 def distance_kpc(distance: Quantity, argument: str = "distance") -> float:
@@ -30,13 +32,22 @@ def distance_kpc(distance: Quantity, argument: str = "distance") -> float:
     return value
 
 
-def energy_above_mev(energy: Quantity) -> float:
+def energy_above_mev(energy: Quantity, scale: Scale) -> float:
     """Give a cut in observed energy in MeV; it must not be negative."""
-    value = units.to_float(energy, "MeV", "energy_above", "10 MeV")
+    value = _energy_mev(energy, scale, "energy_above", strict=True)
     if value < 0:
         message = f"energy_above: expected zero or more, found {energy}"
         raise InputError(message)
     return value
+
+
+def _energy_mev(energy: Quantity, scale: Scale, argument: str, *, strict: bool) -> float:
+    """Give an energy in MeV whose unit says whose it is, where the detector has two kinds."""
+    plain, label = labelled(energy)
+    if label != scale.label and (label or strict):
+        message = f"{argument}: this detector reports energies in {scale.unit}, found {energy!r}"
+        raise InputError(message)
+    return units.to_float(plain, "MeV", argument, f"10 {scale.unit}")
 
 
 def background_time_s(time: Quantity | None) -> float | None:
@@ -78,22 +89,26 @@ def time_edges_s(bins: Quantity | Sequence[Quantity], span: Window) -> Floats:
     return np.arange(first, last + 1) * width
 
 
-def energy_edges_mev(bins: Quantity | Sequence[Quantity] | None) -> tuple[float, ...]:
+def energy_edges_mev(
+    bins: Quantity | Sequence[Quantity] | None, scale: Scale = MEV
+) -> tuple[float, ...]:
     """Edges of bins of energy in MeV, from zero: as given, or multiples of a width."""
     if bins is None:
-        width = BIN_WIDTH_MEV
+        width = scale.bin_width_mev
     elif _is_sequence(bins):
-        edges = _ascending([units.to_float(e, "MeV", "bins", "1 MeV") for e in bins])
+        edges = _ascending([_energy_mev(e, scale, "bins", strict=False) for e in bins])
         if edges[0] < 0:
             message = "bins: an energy cannot be negative"
             raise InputError(message)
         return tuple(edges.tolist()) if edges[0] == 0 else (0.0, *edges.tolist())
     else:
-        width = units.to_float(bins, "MeV", "bins", "1 MeV")
-    if not 0.01 <= width <= LAST_EDGE_MEV:
-        message = f"bins: expected a width between 0.01 and {LAST_EDGE_MEV:g} MeV, found {bins}"
+        width = _energy_mev(bins, scale, "bins", strict=False)
+    last = scale.last_edge_mev
+    if not last / MOST_ENERGY_BINS <= width <= last:
+        span = f"{scale.words(last / MOST_ENERGY_BINS)} and {scale.words(last)}"
+        message = f"bins: expected a width between {span}, found {bins}"
         raise InputError(message)
-    count = int(np.floor(LAST_EDGE_MEV / width + 1e-9))
+    count = int(np.floor(last / width + 1e-9))
     return tuple((np.arange(count + 1) * width).tolist())
 
 

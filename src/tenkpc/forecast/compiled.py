@@ -115,6 +115,11 @@ class _Shares:
             ends = [other.share(low, high, EVERYTHING).sum(axis=1) for other in moved]
         return cls(bins, response.above_threshold(low, high), *ends)
 
+    def times(self, accepted: Floats) -> _Shares:
+        """Keep only so much of each deposit."""
+        each = (self.above, self.scale_low, self.scale_high)
+        return _Shares(self.bins * accepted[:, None], *(share * accepted for share in each))
+
 
 @dataclass(frozen=True, eq=False)
 class _Cells:
@@ -125,9 +130,9 @@ class _Cells:
 
     @classmethod
     def of(
-        cls, response: Response, edges_mev: Floats, starts_mev: Iterable[float], *, recoils: bool
+        cls, response: Response, edges_mev: Floats, starts_mev: Iterable[float], cells: str
     ) -> _Cells:
-        edges = cell_edges([*edges_mev, *response.knots_mev, *starts_mev], recoils=recoils)
+        edges = cell_edges([*edges_mev, *response.knots_mev, *starts_mev], cells)
         return cls(edges, _Shares.of(response, edges[:-1], edges[1:], edges_mev))
 
 
@@ -136,14 +141,15 @@ class _CellsOf:
 
     def __init__(self, exposures: Sequence[Exposure], edges_mev: Floats) -> None:
         self.exposures, self.edges_mev = exposures, edges_mev
-        self.known: dict[tuple[int, bool], _Cells] = {}
+        self.known: dict[tuple[int, str], _Cells] = {}
 
     def __call__(self, response: Response, state: FinalState) -> _Cells:
-        recoils = isinstance(response.light.get(state.lead), Quenched)
-        key = id(response), recoils
+        quenched = isinstance(response.light.get(state.lead), Quenched)
+        cells = "recoil" if response.scale.label else "quenched" if quenched else "plain"
+        key = id(response), cells
         if key not in self.known:
             starts = _starts(self.exposures, response)
-            self.known[key] = _Cells.of(response, self.edges_mev, starts, recoils=recoils)
+            self.known[key] = _Cells.of(response, self.edges_mev, starts, cells)
         return self.known[key]
 
 
@@ -268,7 +274,11 @@ def _observed(
         line = start + (response.visible(state.lead, state.deposit.kinetic_mev) or 0.0)
         low = np.array([line - 0.5 * LINE_WIDTH_MEV])
         return _Shares.of(response, low, low + LINE_WIDTH_MEV, edges_mev), np.zeros(2)
-    return cells.shares, response.kinetic(state.lead, cells.edges - start)
+    kinetic = response.kinetic(state.lead, cells.edges - start)
+    if state.lead not in response.acceptance:
+        return cells.shares, kinetic
+    accepted = response.accepted(state.lead, 0.5 * (kinetic[:-1] + kinetic[1:]))
+    return cells.shares.times(accepted), kinetic
 
 
 def _kept(

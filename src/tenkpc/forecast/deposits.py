@@ -13,9 +13,12 @@ cell, a line over E alone.
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Iterator, Mapping
+import math
+from collections.abc import Callable, Iterable, Iterator, Mapping
 from dataclasses import dataclass
+from functools import partial
 from itertools import pairwise
+from types import MappingProxyType
 
 import numpy as np
 from numpy.typing import NDArray
@@ -29,10 +32,14 @@ Floats = NDArray[np.float64]
 # widest cells of visible energy, MeV, each up to the energy beside it: twice as wide misses
 # 1e-3 in 1 MeV bins
 CELL_WIDTHS_MEV = ((0.05, 30.0), (0.125, 60.0), (0.25, 100.0), (0.5, HIGHEST_ENERGY_MEV + 2.0))
-# the same for quenched recoils, whose spectrum falls by half within 0.3 MeV of visible energy
-RECOIL_WIDTHS_MEV = ((0.0025, 1.0), (0.01, 4.0), (0.05, 20.0), (0.5, HIGHEST_ENERGY_MEV + 2.0))
+# the same for quenched protons, whose spectrum falls by half within 0.3 MeV of visible energy
+QUENCHED_WIDTHS_MEV = ((0.0025, 1.0), (0.01, 4.0), (0.05, 20.0), (0.5, HIGHEST_ENERGY_MEV + 2.0))
+# edges of the cells of nuclear recoils grow by this factor, from the energy beside it in MeV
+RECOIL_RATIO, LOWEST_RECOIL_MEV = 1.02, 1e-6
 # a line is a deposit this wide: narrow against any resolution, wide against rounding
 LINE_WIDTH_MEV = 1e-4
+# edges closer than this share of themselves are one: they differ by rounding
+NARROWEST = 1e-9
 # nodes inside a cell, where the integrand is smooth
 PER_CELL = 2
 # nodes inside an incomplete panel, where it may begin with a logarithm or a square root
@@ -66,16 +73,41 @@ class Part:
     weights: Floats
 
 
-def cell_edges(breaks_mev: Iterable[float], *, recoils: bool = False) -> Floats:
-    """Edges of the cells of visible energy in MeV, with every given break among them."""
+def cell_edges(breaks_mev: Iterable[float], cells: str = "plain") -> Floats:
+    """Edges of the cells of visible energy in MeV, with every given break among them.
+
+    ``cells`` says for what: ``"plain"``, ``"quenched"`` for protons, ``"recoil"`` for nuclei.
+    """
+    edges = _CELLS[cells]()
+    inside = [edge for edge in breaks_mev if 0 < edge < edges[-1]]
+    edges = np.unique(np.concatenate([edges, inside]))
+    kept: Floats = edges[np.concatenate([[True], np.diff(edges) > NARROWEST * edges[1:]])]
+    return kept
+
+
+def _steps(widths_mev: Iterable[tuple[float, float]]) -> Floats:
+    """Edges that are so far apart up to the energy beside it."""
     parts, start = [], 0.0
-    for width, end in RECOIL_WIDTHS_MEV if recoils else CELL_WIDTHS_MEV:
+    for width, end in widths_mev:
         parts.append(np.linspace(start, end, round((end - start) / width) + 1))
         start = end
-    inside = [edge for edge in breaks_mev if 0 < edge < start]
-    edges = np.unique(np.concatenate([*parts, inside]))
-    kept: Floats = edges[np.concatenate([[True], np.diff(edges) > 1e-9])]
-    return kept
+    return np.concatenate(parts)
+
+
+def _growing() -> Floats:
+    """Edges that grow in proportion to the energy."""
+    end = CELL_WIDTHS_MEV[-1][1]
+    count = math.ceil(math.log(end / LOWEST_RECOIL_MEV) / math.log(RECOIL_RATIO))
+    return np.concatenate([[0.0], np.geomspace(LOWEST_RECOIL_MEV, end, count + 1)])
+
+
+_CELLS: Mapping[str, Callable[[], Floats]] = MappingProxyType(
+    {
+        "plain": partial(_steps, CELL_WIDTHS_MEV),
+        "quenched": partial(_steps, QUENCHED_WIDTHS_MEV),
+        "recoil": _growing,
+    }
+)
 
 
 def total_weights(state: FinalState, grid: EnergyGrid) -> Floats:

@@ -190,7 +190,7 @@ class Evaluation:
 
     @cached_property
     def _compiled(self) -> columns.Compiled:
-        return self._compile(arguments.energy_edges_mev(None))
+        return self._compile(arguments.energy_edges_mev(None, self.detector.response.scale))
 
     @cached_property
     def _fluence(self) -> Floats:

@@ -11,6 +11,7 @@ from numpy.typing import NDArray
 from tenkpc import rendering
 from tenkpc.detector.detector import Detector
 from tenkpc.detector.detector_file import check_choice
+from tenkpc.detector.scales import MEV
 from tenkpc.errors import InputError
 from tenkpc.forecast import (
     arguments,
@@ -109,7 +110,8 @@ class Forecast(Evaluation):
             self._needs_time("within(time=...)")
             changed["window_s"] = arguments.window_s(time, self.span_s)
         if energy_above is not None:
-            changed["energy_above_mev"] = arguments.energy_above_mev(energy_above)
+            scale = self.detector.response.scale
+            changed["energy_above_mev"] = arguments.energy_above_mev(energy_above, scale)
         return self.changed(**changed)
 
     def replace(self, changes: Mapping[str, object]) -> Forecast:
@@ -200,7 +202,8 @@ class Forecast(Evaluation):
             ``"observed"``, the energy that the detector reports, or ``"neutrino"``, the true
             neutrino energy of the counted events.
         bins
-            width of the bins, or their edges; 2 MeV up to 100 MeV unless given.
+            width of the bins, or their edges; unless given, 2 MeV up to 100 MeV, and for nuclear
+            recoils 1 keVnr up to 100 keVnr or 0.25 keVee up to 25 keVee.
         by
             what the columns are: ``"interaction"``, or ``"seen"`` for what the detector sees.
 
@@ -211,11 +214,11 @@ class Forecast(Evaluation):
             holds everything above the last edge. ``attrs["energy"]`` names the kind of energy.
             A detector with backgrounds has one column more, ``background``, for ``live_s``.
         """
-        edges = arguments.energy_edges_mev(bins)
         if of not in ("observed", "neutrino"):
             message = f"of: expected 'observed' or 'neutrino', found {of!r}"
             raise InputError(message)
         observed = of == "observed"
+        edges = arguments.energy_edges_mev(bins, self.detector.response.scale if observed else MEV)
         names, values = self._spectrum(edges, by, observed=observed)
         kind = self.detector.response.kind if observed else of
         noise = self._background_spectrum(np.array(edges)) if observed else None

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 import shlex
 from collections.abc import Iterator
 
@@ -9,7 +10,8 @@ from tenkpc import interactions
 from tenkpc.detector import gallery
 from tenkpc.detector.detector import Detector
 from tenkpc.detector.media import MEDIA
-from tenkpc.detector.response import Curve, Resolution, Response
+from tenkpc.detector.response import Curve, Response
+from tenkpc.detector.scales import Scale
 from tenkpc.forecast.evaluation import Evaluation
 from tenkpc.interactions.base import Reference
 from tenkpc.rendering import decimals_for, number, percent
@@ -64,21 +66,24 @@ def _counted(forecast: Evaluation) -> str:
 
 def threshold(forecast: Evaluation) -> str:
     """Say above which energy, and of which kind, an event must be observed."""
-    detector, kind = forecast.detector, forecast.detector.response.kind
-    where: dict[float, list[str]] = {}
-    for volume in detector.volumes:
-        lowest = max(volume.response.threshold_mev, forecast.energy_above_mev or 0.0)
-        where.setdefault(lowest, []).append(volume.name)
+    where: dict[str, list[str]] = {}
+    for volume in forecast.detector.volumes:
+        words = _cut(volume.response, forecast.energy_above_mev or 0.0)
+        where.setdefault(words, []).append(volume.name)
     if len(where) == 1:
-        return f"observed {_above(lowest, kind)}"
-    parts = (f"{_above(cut, kind)} in {' and '.join(names)}" for cut, names in where.items())
+        return f"observed {next(iter(where))}"
+    parts = (f"{words} in {' and '.join(names)}" for words, names in where.items())
     return f"observed {', '.join(parts)}"
 
 
-def _above(lowest_mev: float, kind: str) -> str:
-    if lowest_mev <= 0:
-        return f"at any {kind} energy"
-    return f"above {lowest_mev:.4g} MeV of {kind} energy"
+def _cut(response: Response, above_mev: float) -> str:
+    """Say what one volume's threshold is: in its energy, beside it, or both."""
+    lowest, scale = max(response.threshold_mev, above_mev), response.scale
+    if lowest <= 0:
+        return response.threshold_beside or f"at any {response.kind} energy"
+    whose = "" if scale.label else f" of {response.kind} energy"
+    both = f" and {response.threshold_beside}" if response.threshold_beside else ""
+    return f"above {scale.words(lowest)}{whose}{both}"
 
 
 def mass(mass_kg: float) -> str:
@@ -97,12 +102,14 @@ def distance(distance_kpc: float) -> str:
     return f"{distance_kpc * 1e3:.4g} pc"
 
 
-def resolution(width: Resolution) -> str:
+def resolution(response: Response) -> str:
     """Print the terms of a resolution that are not zero."""
+    width, scale = response.resolution, response.scale
+    stochastic = width.stochastic / math.sqrt(scale.mev)
     terms = [
-        (width.stochastic, f"{width.stochastic:g}/√(E/MeV)"),
+        (width.stochastic, f"{stochastic:.4g}/√(E/{scale.unit})"),
         (width.constant, f"{width.constant:g}"),
-        (width.noise_mev, f"{width.noise_mev:g} MeV/E"),
+        (width.noise_mev, f"{scale.words(width.noise_mev)}/E"),
     ]
     sign = " + " if width.linear else " ⊕ "
     return (
@@ -112,13 +119,13 @@ def resolution(width: Resolution) -> str:
     )
 
 
-def curve(efficiency: Curve) -> str:
+def curve(efficiency: Curve, scale: Scale) -> str:
     """Print an efficiency: its value, or its range."""
     if efficiency.is_constant:
         return percent(efficiency.values[0])
-    first, last = efficiency.knots_mev[0], efficiency.knots_mev[-1]
+    first, last = (scale.words(efficiency.knots_mev[end]) for end in (0, -1))
     low, high = percent(efficiency.values[0]), percent(efficiency.values[-1])
-    return f"{low} at {first:g} MeV to {high} at {last:g} MeV"
+    return f"{low} at {first} to {high} at {last}"
 
 
 def assumptions(forecast: Evaluation) -> Iterator[Assumption]:
@@ -132,7 +139,8 @@ def assumptions(forecast: Evaluation) -> Iterator[Assumption]:
         origin = "given" if forecast.window_s else "the whole burst"
         yield "time window", f"{start:g} s to {end:g} s", origin
     if forecast.energy_above_mev is not None:
-        yield "only above", f"{forecast.energy_above_mev:g} MeV observed", "given"
+        cut = forecast.detector.response.scale.words(forecast.energy_above_mev)
+        yield "only above", f"{cut} observed", "given"
 
 
 def _of_detector(forecast: Evaluation) -> Iterator[Assumption]:
@@ -148,7 +156,7 @@ def _of_detector(forecast: Evaluation) -> Iterator[Assumption]:
     yield "threshold", threshold(forecast), _origin(detector, "threshold", given)
     for key, name, value in _of_response(response)[1:]:
         yield name, value, _origin(detector, key, given)
-    yield "light of protons", detector.proton_light, detector.origin
+    yield "light of slow protons and nuclei", detector.quenching, detector.origin
     for source in detector.backgrounds:
         rate = f"{source.rate_hz:.4g} Hz above the threshold"
         yield f"background {source.name}", rate, detector.origin
@@ -164,9 +172,9 @@ def _of_detector(forecast: Evaluation) -> Iterator[Assumption]:
 def _of_response(response: Response) -> tuple[tuple[str, str, str], ...]:
     """Keys of a response with their names and values."""
     return (
-        ("threshold", "threshold", f"{response.threshold_mev:.4g} MeV {response.kind} energy"),
-        ("resolution", "resolution", resolution(response.resolution)),
-        ("efficiency", "efficiency", curve(response.efficiency)),
+        ("threshold", "threshold", _cut(response, 0.0)),
+        ("resolution", "resolution", resolution(response)),
+        ("efficiency", "efficiency", curve(response.efficiency, response.scale)),
         ("live_fraction", "live fraction", percent(response.live_fraction)),
     )
 

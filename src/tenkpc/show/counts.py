@@ -58,14 +58,17 @@ def spectrum(
         the main panel. Background, where the detector's file has some, is hatched on top.
     """
     main, *below = panels(ax, (4, 1))
-    frame = forecast.spectrum(bins=bins, by="seen").iloc[:-1]
-    widths = frame["width_mev"].to_numpy()
-    edges = np.append(frame.index.to_numpy(), frame.index[-1] + widths[-1])
+    frame, scale = (
+        forecast.spectrum(bins=bins, by="seen").iloc[:-1],
+        forecast.detector.response.scale,
+    )
+    widths = frame["width_mev"].to_numpy() / scale.mev
+    edges = np.append(frame.index.to_numpy() / scale.mev, frame.index[-1] / scale.mev + widths[-1])
     names, parts = ranked(frame)
     total = parts.sum(axis=0)
     last = _last_bin(total)
     main.set_xlim(0, edges[last])
-    main.set_ylabel(f"events / {bin_width(widths, 'MeV')}")
+    main.set_ylabel(f"events / {bin_width(widths, scale.unit)}")
     if log:
         _lines(main, names, parts, edges)
     else:
@@ -80,7 +83,7 @@ def spectrum(
         ]
         factors(panel, totals, total, edges)
     lowest = (below or [main])[-1]
-    lowest.set_xlabel(f"observed {forecast.detector.response.kind} energy [MeV]")
+    lowest.set_xlabel(f"observed {forecast.detector.response.kind} energy [{scale.unit}]")
     foot(lowest, assumed(forecast))
     return main
 
@@ -138,7 +141,8 @@ def _background_on_top(ax: Axes, frame: DataFrame, total: Floats, edges: Floats)
 
 def _shade_below_threshold(ax: Axes, forecast: Forecast) -> None:
     cuts = [volume.response.threshold_mev for volume in forecast.detector.volumes]
-    threshold = max(min(cuts), forecast.energy_above_mev or 0.0)
+    lowest = max(min(cuts), forecast.energy_above_mev or 0.0)
+    threshold = lowest / forecast.detector.response.scale.mev
     if threshold <= 0:
         return
     ax.axvspan(0, threshold, color="0.85", zorder=0, linewidth=0)

@@ -1,10 +1,38 @@
-"""Files to begin with: valid as they are, every key with a word about it."""
+"""Files to begin with: valid as they are, every key with a word about it.
+
+A detector's is the common part in ``detector.toml`` with the first volume and the response of a
+medium in the place of ``@volume`` and ``@response``, and energies as the medium writes them.
+"""
 
 from __future__ import annotations
 
-from importlib.resources import files
+from pathlib import Path
+
+# media that a file to begin with may be for, that which is meant unless another is named first
+MEDIA = ("scintillator", "cherenkov", "recoil")
+# energies of a background: mean, width, from, to
+_ENERGIES = {
+    "scintillator": ("1.1 MeV", "0.4 MeV", "0.5 MeV", "3 MeV"),
+    "cherenkov": ("7 MeV", "1.5 MeV", "6 MeV", "12 MeV"),
+    "recoil": ("3 keVnr", "1 keVnr", "2 keVnr", "9 keVnr"),
+}
 
 
-def text(kind: str) -> str:
-    """Text of a file to begin with, ``"detector"`` or ``"burst"``."""
-    return files(__name__).joinpath(f"{kind}.toml").read_text(encoding="utf-8")
+def detector(medium: str = MEDIA[0]) -> str:
+    """Text of a detector file to begin with."""
+    volume, response = _read(medium).split("\n\n", 1)
+    energies = zip(("@mean", "@width", "@from", "@to"), _ENERGIES[medium], strict=True)
+    text = _read("detector")
+    marks = {"@volume": volume, "@response": response.rstrip(), **dict(energies)}
+    for mark, words in marks.items():
+        text = text.replace(mark, words)
+    return text
+
+
+def burst() -> str:
+    """Text of a burst file to begin with."""
+    return _read("burst")
+
+
+def _read(name: str) -> str:
+    return Path(__file__).with_name(f"{name}.toml").read_text(encoding="utf-8")
