@@ -11,7 +11,7 @@ from tenkpc import data
 from tenkpc.errors import ComputationError
 
 ROOT = files("tenkpc.data")
-FOLDERS = ("cross_sections", "galaxy", "materials", "measurements", "stopping")
+FOLDERS = ("cross_sections", "galaxy", "materials", "measurements", "nuclei", "stopping")
 FILES = ["mixing.toml", *(f"{d}/{n}.toml" for d in FOLDERS for n in data.names(d))]
 
 

@@ -35,7 +35,7 @@ def test_joints_become_borders_of_panels():
     """A joint inside the range is a border, one outside is no business of the grid."""
     grid = EnergyGrid.with_joints([7.5, 5.0, 0.0, 300.0])
     assert grid.panels_mev == tuple(sorted({*PANELS_MEV, 7.5}))
-    assert grid.panel_of(7.6) == grid.panels_mev.index(7.5)
+    assert grid.panels_of(np.array(7.6)) == grid.panels_mev.index(7.5)
 
 
 def test_panels_of_unequal_width_share_one_rule():

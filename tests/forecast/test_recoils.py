@@ -11,7 +11,7 @@ from scipy.special import ndtr
 
 from tenkpc import Burst, Detector, Forecast, Unconverted, interactions
 from tenkpc.detector.materials import nucleus
-from tenkpc.forecast.compiled import Exposure, compile_rows
+from tenkpc.forecast.compiled import FIRST_BIN, Exposure, compile_rows
 from tenkpc.forecast.fold import fold
 from tenkpc.forecast.grid import EnergyGrid
 from tenkpc.interactions import recoil
@@ -131,7 +131,8 @@ def test_bins_against_nested_quadrature(kind, lines):
     edges = np.array([0.0, 1e-3, 2e-3, 5e-3, 0.02, 0.05])
     grid = EnergyGrid()
     compiled = compile_rows([Exposure("main", 1e42, reaction, response)], grid, edges)
-    ours = fold(flux(grid.nodes_mev)[None, None], np.zeros(1, int), compiled.tensor[:1])[0, 0, 7:]
+    events = fold(flux(grid.nodes_mev)[None, None], np.zeros(1, int), compiled.tensor[:1])[0, 0]
+    ours = events[FIRST_BIN:]
     (found,) = reaction.final_states("nu_e")
     light, width = response.light["Ar-40"], response.resolution
 

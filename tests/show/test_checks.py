@@ -16,6 +16,11 @@ ALL = {check.name: check for check in checks.all_checks()}
 SLOW = {
     "nitrogen-ground-state-lsnd": (9.199, 1e-3),
     "nitrogen-inclusive-lampf": (9.199 + 4.668, 1e-3),
+    "iodine-bound-lampf": (2.66, 1e-2),  # there in 31 levels, which blur the border
+    "iron-stopped-muon-karmen": (3.378 * 0.808, 1e-3),
+    "stopped-pion-argon": (18.22, 5e-3),
+    "stopped-pion-caesium-iodide": (187.34, 2e-3),
+    "stopped-pion-germanium": (58.72, 2e-3),
     "level-two-kinds-karmen": (10.231, 1e-3),
     "level-line-karmen": (2.721, 1e-3),
     "stopped-muon-karmen": (23.500 + 22.671, 1e-3),
@@ -43,9 +48,11 @@ def test_ours_is_the_average_of_the_slow_calculation(name):
 def test_no_pull_is_large():
     """Nothing built in disagrees with a measurement by more than two and a half deviations.
 
-    The largest is the reactors' deficit, which is the spectra's.
+    But lead, where theory and the one measurement are options; the largest of the others is the
+    reactors' deficit, which is the spectra's.
     """
     pulls = {name: check.pull for name, check in ALL.items()}
+    assert pulls.pop("lead-neutrons-coherent") == pytest.approx((1 - 0.29) / 0.17)
     assert max(np.abs(list(pulls.values()))) < 2.5
     assert max(pulls, key=lambda name: abs(pulls[name])) == "reactor-yield"
 

@@ -12,7 +12,7 @@ from typing import Any
 
 from tenkpc import data
 from tenkpc.detector import materials, recoils
-from tenkpc.detector.background import SHAPES, Background, lies_above
+from tenkpc.detector.background import SHAPES, Background, constant, lies_above
 from tenkpc.detector.detector_file import COMPOSITIONS, BackgroundKeys, DetectorKeys, VolumeKeys
 from tenkpc.detector.materials import Composition
 from tenkpc.detector.media import EVENT_OFFSETS_MEV, MEDIA
@@ -149,6 +149,7 @@ def _response(
         scale_error=scale_error,
         acceptance=recoils.acceptance(given, lights, path, document),
         threshold_beside=recoils.beside(given),
+        neutron_efficiency=given.neutron_efficiency if given.kind == "none" else None,
     )
 
 
@@ -167,6 +168,8 @@ def _lights(
     """What slow particles are worth in a volume; none where they are not seen."""
     if keys.medium == "recoil":
         return recoils.lights(keys, composition.nuclei, document)
+    if keys.medium == "ionisation":
+        return recoils.with_gammas(keys.gamma_containment)
     protons = _proton_light(keys, volume, composition, document)
     return () if protons is None else (("proton", Worth(protons, protons)),)
 
@@ -231,6 +234,9 @@ def _unusable(
 def _background(
     keys: BackgroundKeys, place: int, mass_kg: float, threshold_mev: float, document: Document
 ) -> Background:
+    scale = 1.0 if keys.per is None else mass_kg / keys.per
+    if keys.shape is None:  # of a counter, which sorts nothing by energy
+        return Background(keys.name, keys.rate * scale, partial(constant, start=0.0, end=1.0))
     form, _ = SHAPES[keys.shape]
     problem, parameters = "", _parameters(keys)
     if keys.file is not None:
@@ -252,7 +258,6 @@ def _background(
         problem = f"nothing of its shape lies above the threshold of {threshold_mev:g} MeV"
     if problem:
         raise document.refused([(("background", place, "shape"), problem)])
-    scale = 1.0 if keys.per is None else mass_kg / keys.per
     return Background(keys.name, keys.rate * scale, cumulative)
 
 

@@ -5,7 +5,7 @@ The models only check; what the numbers mean is decided in `tenkpc.detector.asse
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterable, Iterator, Mapping
+from collections.abc import Callable, Iterable, Iterator, Mapping, Sequence
 from typing import Annotated, Any, Literal
 
 from pydantic import Field
@@ -66,7 +66,7 @@ class BackgroundKeys(Strict):
     name: Annotated[str, Field(min_length=1)]
     rate: Rate
     per: Mass | None = None
-    shape: Literal["constant", "exponential", "gaussian", "power", "table"]
+    shape: Literal["constant", "exponential", "gaussian", "power", "table"] | None = None
     start: Annotated[Energy | None, Field(alias="from")] = None
     end: Annotated[Energy | None, Field(alias="to")] = None
     mean: Energy | None = None
@@ -124,6 +124,8 @@ class DetectorKeys(Strict):
         response = raw.get("response")
         if isinstance(response, dict) and (scale := energy_rules.scale_of(response)):
             yield from energy_rules.labels(_background_energies(raw), scale)
+            counter = energy_rules.kind_of(response) == "none"
+            yield from _shapes(_tables(raw, "background"), counter=counter)
         for place, volume in enumerate(_tables(raw, "volume")):
             own = volume.get("response", {})
             if isinstance(response, dict) and isinstance(own, dict):
@@ -163,6 +165,16 @@ def _tables(raw: Mapping[str, Any], key: str) -> list[Mapping[str, Any]]:
     given = raw.get(key)
     found = given if isinstance(given, list) else []
     return [table if isinstance(table, dict) else {} for table in found]
+
+
+def _shapes(backgrounds: Sequence[Mapping[str, Any]], *, counter: bool) -> Iterator[Any]:
+    """Check that a background has a shape where energies are observed, and none elsewhere."""
+    for place, table in enumerate(backgrounds):
+        if counter and "shape" in table:
+            message = "a neutron-counter observes no energy, so its background has no shape"
+            yield ("background", place, "shape"), message
+        elif not counter and "shape" not in table:
+            yield ("background", place, "shape"), f"is missing; one of {', '.join(SHAPES)}"
 
 
 def _background_energies(raw: Mapping[str, Any]) -> Iterator[Any]:

@@ -50,6 +50,20 @@ MEDIA: Mapping[str, Medium] = MappingProxyType(
             light={"electron": Plain(), "gamma": Plain(), "positron": Plain()},
             keys=_ENERGIES,
         ),
+        # charge of tracks; what gammas are worth comes with their containment
+        "ionisation": Medium(
+            words="ionisation charge",
+            scales={"visible": MEV},
+            light={"electron": Plain()},
+            keys=_ENERGIES | {"gamma_containment"},
+        ),
+        # neutrons that were set free, whatever else was in the event
+        "neutron-counter": Medium(
+            words="neutrons",
+            scales={"none": MEV},
+            light={},
+            keys=frozenset({"neutron_efficiency"}),
+        ),
         # nuclei set in motion, told from electrons; what each is worth comes with the volume
         "recoil": Medium(
             words="nuclear recoils",
@@ -72,4 +86,10 @@ MEDIA: Mapping[str, Medium] = MappingProxyType(
     }
 )
 # what a kind adds to the kinetic energy of an event that is taken for a single electron
-EVENT_OFFSETS_MEV = {"kinetic": 0.0, "total": ELECTRON_MASS_MEV, "visible": 0.0, "recoil": 0.0}
+EVENT_OFFSETS_MEV = {
+    "kinetic": 0.0,
+    "none": 0.0,
+    "recoil": 0.0,
+    "total": ELECTRON_MASS_MEV,
+    "visible": 0.0,
+}

@@ -48,17 +48,20 @@ class Plain:
     ----------
     offset_mev
         what is added to the kinetic energy: the annihilation gammas of a positron.
+    share
+        share of the kinetic energy that is seen, above zero.
     """
 
     offset_mev: float = 0.0
+    share: float = 1.0
 
     def visible(self, kinetic_mev: Floats) -> Floats:
-        """Visible energy: the kinetic energy plus the offset."""
-        return kinetic_mev + self.offset_mev
+        """Visible energy: the share of the kinetic energy plus the offset."""
+        return self.share * kinetic_mev + self.offset_mev
 
     def kinetic(self, visible_mev: Floats) -> Floats:
-        """Kinetic energy: the visible energy less the offset, not below zero."""
-        return np.maximum(visible_mev - self.offset_mev, 0.0)
+        """Kinetic energy: the visible energy less the offset over the share, not below zero."""
+        return np.maximum(visible_mev - self.offset_mev, 0.0) / self.share
 
 
 @dataclass(frozen=True)

@@ -9,6 +9,7 @@ from types import MappingProxyType
 
 import numpy as np
 
+from tenkpc.constants import ELECTRON_MASS_MEV
 from tenkpc.detector.energy_rules import KINDS
 from tenkpc.detector.media import MEDIA
 from tenkpc.detector.quanta import Above, Acceptance, Registered, Yield
@@ -47,6 +48,17 @@ def lights(keys: ResponseKeys, nuclei: Iterable[Nucleus], document: Document) ->
     return tuple(made)
 
 
+def with_gammas(containment: float) -> Lights:
+    """Give what gammas are worth, alone and behind a positron, where a share of them is seen."""
+    annihilation = 2 * ELECTRON_MASS_MEV * containment
+    positron = Plain(annihilation)
+    made = [("positron", Worth(positron, positron))]
+    if containment > 0:
+        gamma = Plain(share=containment)
+        made.append(("gamma", Worth(gamma, gamma)))
+    return tuple(made)
+
+
 def is_beside(keys: ResponseKeys) -> bool:
     """Whether the threshold is a number of quanta or in a kind of energy that is not observed."""
     cut = keys.threshold.value if keys.threshold else None
@@ -55,6 +67,8 @@ def is_beside(keys: ResponseKeys) -> bool:
 
 def beside(keys: ResponseKeys) -> str:
     """Say what the threshold is where it is none of the observed energy."""
+    if keys.kind == "none":
+        return "with at least one neutron registered"
     if keys.threshold is None or not is_beside(keys):
         return ""
     cut = keys.threshold.value

@@ -122,6 +122,8 @@ class Response:
         against their kinetic energy, before resolution.
     threshold_beside
         words for that threshold.
+    neutron_efficiency
+        for a counter of neutrons, which has no energies, the probability that it registers one.
     """
 
     kind: str = "total"
@@ -136,6 +138,21 @@ class Response:
     scale_error: float = 0.0
     acceptance: Mapping[str, Acceptance] = field(default_factory=lambda: MappingProxyType({}))
     threshold_beside: str = ""
+    neutron_efficiency: float | None = None
+
+    @property
+    def counts_neutrons(self) -> bool:
+        """Whether it registers neutrons and nothing else."""
+        return self.neutron_efficiency is not None
+
+    def registered(self, neutrons: int) -> float:
+        """Share of events with so many neutrons of which at least one is registered."""
+        missed = (1 - (self.neutron_efficiency or 0.0)) ** neutrons
+        return self.live_fraction * (1 - missed)
+
+    def mean_registered(self, neutrons: int) -> float:
+        """Mean number of neutrons that are registered of so many."""
+        return self.live_fraction * (self.neutron_efficiency or 0.0) * neutrons
 
     def accepted(self, particle: str, kinetic_mev: Floats) -> Floats:
         """Share of events that passes thresholds beside that of the observed energy."""

@@ -19,6 +19,7 @@ from tenkpc.textfiles import Strict
 
 Problems = Iterable[tuple[tuple[str | int, ...], str]]
 Kind = Literal["kinetic", "recoil", "total", "visible"]
+MediumName = Literal["cherenkov", "ionisation", "neutron-counter", "recoil", "scintillator"]
 
 
 def written_out(value: Any) -> Any:
@@ -91,7 +92,7 @@ class YieldKeys(Strict):
 class ResponseKeys(Strict):
     """`[response]`: what the instrument makes of an event."""
 
-    medium: Literal["cherenkov", "recoil", "scintillator"]
+    medium: MediumName
     energy: Kind | None = None
     threshold: Annotated[ThresholdKeys, BeforeValidator(written_out)] | None = None
     resolution: ResolutionKeys = ResolutionKeys()
@@ -101,6 +102,8 @@ class ResponseKeys(Strict):
     light_yield: Annotated[YieldKeys, BeforeValidator(written_out)] | None = None
     charge_yield: Annotated[YieldKeys, BeforeValidator(written_out)] | None = None
     fluctuation: Literal["poisson", "binomial"] = "poisson"
+    gamma_containment: Fraction = 1.0
+    neutron_efficiency: Fraction = 1.0
     efficiency: Annotated[EfficiencyKeys, BeforeValidator(written_out)] | None = None
     live_fraction: Fraction = 1.0
 
@@ -122,7 +125,7 @@ class OwnResponseKeys(ResponseKeys):
     What is left out is as in `[response]`; a medium of its own begins anew.
     """
 
-    medium: Literal["cherenkov", "recoil", "scintillator"] | None = None  # type: ignore[assignment]
+    medium: MediumName | None = None  # type: ignore[assignment]
 
     @classmethod
     def cross_rules(cls, raw: Mapping[str, Any]) -> Problems:

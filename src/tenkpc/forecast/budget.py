@@ -19,6 +19,10 @@ if TYPE_CHECKING:
     from pandas import DataFrame
 
 
+# effects below this share of the total are rounding
+NOTHING = 1e-9
+
+
 class Effect(NamedTuple):
     """What 1σ of one cause does to the total, in counts: both numbers positive as a rule."""
 
@@ -70,6 +74,8 @@ def mixing(forecast: Evaluation) -> Iterator[Effect]:
     for name, low, high in forecast.conversion.within_errors():
         ends = [forecast.converted(end).total for end in (low, high)]
         fall, rise = total - min(ends), max(ends) - total
+        if max(fall, rise) < NOTHING * total:
+            continue  # the neutral current knows no flavours
         origin = forecast.conversion.describe()
         yield Effect(name, "mixing angle", fall, rise, "everything", origin)
 

@@ -14,7 +14,7 @@ cell, a line over E alone.
 from __future__ import annotations
 
 import math
-from collections.abc import Callable, Iterable, Iterator, Mapping
+from collections.abc import Callable, Iterable, Iterator, Mapping, Sequence
 from dataclasses import dataclass
 from functools import partial
 from itertools import pairwise
@@ -63,7 +63,10 @@ class Part:
     cells
         index of the cell of each deposit, ascending, shape (deposits,).
     weights
-        ∫ dE ℓ_node(E) dσ, shape (deposits, variants, nodes of the panel), cm² MeV.
+        ∫ dE ℓ_node(E) dσ of the central cross section, (deposits, nodes of the panel), cm² MeV.
+    variants
+        the same of the others, (deposits, variants, nodes); or, where each deposit belongs to one
+        neutrino energy, their ratios to the central one, (deposits, variants, 1).
     """
 
     panel: int
@@ -71,6 +74,16 @@ class Part:
     high_mev: float
     cells: NDArray[np.intp]
     weights: Floats
+    variants: Floats
+
+    def onto(self, variant: int, share: Floats) -> Floats:
+        """Σ_deposits weight × share of its cell, from (cells, columns) to (nodes, columns)."""
+        if variant == CENTRAL:
+            first = np.flatnonzero(np.diff(self.cells, prepend=-1))
+            return np.add.reduceat(self.weights, first, axis=0).T @ share[self.cells[first]]
+        if self.variants.shape[2] == 1:
+            return self.weights.T @ (share[self.cells] * self.variants[:, variant])
+        return self.variants[:, variant].T @ share[self.cells]
 
 
 def cell_edges(breaks_mev: Iterable[float], cells: str = "plain") -> Floats:
@@ -110,11 +123,40 @@ _CELLS: Mapping[str, Callable[[], Floats]] = MappingProxyType(
 )
 
 
+def lines(
+    state: FinalState, grid: EnergyGrid, breaks_mev: Iterable[float] = (), order: int = PER_PIECE
+) -> Iterator[Part]:
+    """Everything of a final state as if it deposited nothing: one cell, stretch by stretch."""
+    pieces = _pieces(state, grid, breaks_mev)
+    cell = np.zeros(1, dtype=np.intp)
+    for (panel, low, high), weights in zip(
+        pieces, _piece_weights(state, grid, pieces, order), strict=True
+    ):
+        yield Part(panel, low, high, cell, weights[None, CENTRAL], weights[None])
+
+
+def _piece_weights(
+    state: FinalState, grid: EnergyGrid, pieces: Sequence[tuple[int, float, float]], order: int
+) -> Floats:
+    """∫ ℓ_node σ dE over each piece and variant, all at once, (pieces, variants, nodes)."""
+    x, w = gauss(order)
+    panel = np.array([piece[0] for piece in pieces], dtype=np.intp)
+    low, width = (np.array(column)[:, None] for column in zip(*_spans(pieces), strict=True))
+    energy = low + width * x
+    values = _variants(state, energy) * state.sigma_cm2(energy) * width * w
+    weights: Floats = np.moveaxis(values, 0, 1) @ grid.basis(panel[:, None], energy)
+    return weights
+
+
+def _spans(pieces: Sequence[tuple[int, float, float]]) -> list[tuple[float, float]]:
+    return [(low, high - low) for _, low, high in pieces]
+
+
 def total_weights(state: FinalState, grid: EnergyGrid) -> Floats:
     """∫ dE ℓ_node(E) σ(E) and its variants, shape (variants, nodes), cm² MeV."""
     weights = np.zeros((4, grid.count))
-    for part in _line(state, grid, (), PER_PIECE):
-        weights[:, columns(part.panel)] += part.weights[0]
+    for part in lines(state, grid):
+        weights[:, columns(part.panel)] += part.variants[0]
     return weights
 
 
@@ -144,11 +186,8 @@ def weighted(
     """
     sums = {v: np.zeros((grid.count, share.shape[1])) for v, share in shares.items()}
     for part in parts(state, grid, kinetic_edges_mev):
-        first = np.flatnonzero(np.diff(part.cells, prepend=-1))
-        cells = part.cells[first]
-        weights = np.add.reduceat(part.weights, first, axis=0)
         for variant, share in shares.items():
-            sums[variant][columns(part.panel)] += weights[:, variant].T @ share[cells]
+            sums[variant][columns(part.panel)] += part.onto(variant, share)
     return sums
 
 
@@ -166,7 +205,7 @@ def parts(
     """
     match state.deposit:
         case Fixed():
-            yield from _line(state, grid, breaks_mev, order)
+            yield from lines(state, grid, breaks_mev, order)
         case Shifted(offset_mev=offset):
             yield from _shifted(state, offset, grid, kinetic_edges_mev, breaks_mev)
         case Spread():
@@ -187,14 +226,22 @@ def _variants(state: FinalState, energy_mev: Floats) -> Floats:
 
 def _pieces(
     state: FinalState, grid: EnergyGrid, breaks: Iterable[float]
-) -> Iterator[tuple[int, float, float]]:
-    """Stretches of neutrino energy, none across a panel's edge or a break of any kind."""
+) -> list[tuple[int, float, float]]:
+    """Panels and ends of stretches of neutrino energy, none across a border of any kind."""
+    wanted = _own_breaks(state).union(grid.panels_mev, breaks)
+    inside = sorted(e for e in wanted if 0 <= e <= HIGHEST_ENERGY_MEV)
+    panels = grid.panels_of(0.5 * (np.array(inside[:-1]) + np.array(inside[1:])))
+    return [
+        (int(panel), low, high)
+        for panel, (low, high) in zip(panels, pairwise(inside), strict=True)
+        if high > state.window_mev[0]
+    ]
+
+
+def _own_breaks(state: FinalState) -> set[float]:
+    """Neutrino energies at which a cross section is not smooth."""
     threshold, end = state.window_mev
-    onset = {threshold + step for step in (0.0, *ONSET_MEV)}
-    wanted = onset.union({end}, state.breaks_mev, breaks)
-    inside = {e for e in wanted if 0 < e < HIGHEST_ENERGY_MEV}
-    for low, high in pairwise(sorted(inside.union(grid.panels_mev))):
-        yield grid.panel_of(0.5 * (low + high)), low, high
+    return {threshold + step for step in (0.0, *ONSET_MEV)}.union({end}, state.breaks_mev)
 
 
 def _cell_nodes(edges: Floats) -> tuple[Floats, Floats]:
@@ -204,30 +251,28 @@ def _cell_nodes(edges: Floats) -> tuple[Floats, Floats]:
     return (edges[:-1, None] + width * x).ravel(), (width * w).ravel()
 
 
-def _line(
-    state: FinalState, grid: EnergyGrid, breaks: Iterable[float], order: int
-) -> Iterator[Part]:
-    x, w = gauss(order)
-    for panel, low, high in _pieces(state, grid, breaks):
-        energy = low + (high - low) * x
-        values = _variants(state, energy) * state.sigma_cm2(energy) * (high - low) * w
-        weights = (values @ grid.basis(panel, energy))[None]
-        yield Part(panel, low, high, np.zeros(1, dtype=np.intp), weights)
-
-
 def _shifted(
     state: FinalState, offset: float, grid: EnergyGrid, edges: Floats, breaks: Iterable[float]
 ) -> Iterator[Part]:
-    for panel, low, high in _pieces(state, grid, breaks):
-        start, end = max(low - offset, edges[0]), min(high - offset, edges[-1])
-        if end <= start:
-            continue
-        inner = edges[(edges > start) & (edges < end)]
-        kinetic, width = _cell_nodes(np.concatenate([[start], inner, [end]]))
-        energy = kinetic + offset
-        values = _variants(state, energy) * state.sigma_cm2(energy) * width
-        weights = values.T[:, :, None] * grid.basis(panel, energy)[:, None, :]
-        yield Part(panel, low, high, np.searchsorted(edges, kinetic, "right") - 1, weights)
+    # all borders are borders of cells as well, so that every cell is smooth
+    wanted = {*grid.panels_mev, *breaks}
+    stretches = np.array(sorted(e for e in wanted if 0 <= e <= HIGHEST_ENERGY_MEV))
+    borders = np.concatenate([stretches, sorted(_own_breaks(state))]) - offset
+    inside = borders[(borders > edges[0]) & (borders < edges[-1])]
+    kinetic, width = _cell_nodes(np.union1d(edges, inside))
+    energy = kinetic + offset
+    open_ = np.searchsorted(energy, stretches[[0, -1]])
+    kinetic, width, energy = (array[slice(*open_)] for array in (kinetic, width, energy))
+    panel = grid.panels_of(energy)
+    variants = _variants(state, energy).T[:, :, None]
+    weights = (state.sigma_cm2(energy) * width)[:, None] * grid.basis(panel, energy)
+    cells = np.searchsorted(edges, kinetic, "right") - 1
+    ends = np.searchsorted(energy, stretches)
+    for (low, high), (first, last) in zip(pairwise(stretches), pairwise(ends), strict=True):
+        if last > first:
+            some = slice(first, last)
+            own = cells[some], weights[some], variants[some]
+            yield Part(int(panel[first]), float(low), float(high), *own)
 
 
 def _spread(
@@ -252,7 +297,8 @@ def _spread(
             else:
                 stretch = (start[at, None], end[at, None], kinetic[at, None])
                 weights = _part_of_panel(state, deposit, grid, panel, stretch, order)
-            yield Part(panel, low, high, at // PER_CELL, weights * kinetic_weight[at, None, None])
+            weights *= kinetic_weight[at, None, None]
+            yield Part(panel, low, high, at // PER_CELL, weights[:, CENTRAL], weights)
 
 
 def _whole_panel(

@@ -157,6 +157,11 @@ class Evaluation:
         return _summed(self.row_values, self._columns_by("interaction")[1], len(self.keys))
 
     @property
+    def counts_neutrons(self) -> bool:
+        """Whether some volume of the detector registers neutrons and nothing else."""
+        return any(volume.response.counts_neutrons for volume in self.detector.volumes)
+
+    @property
     def rows(self) -> tuple[columns.Row, ...]:
         """What each row of the compiled tensor counts: a final state of a species in a volume."""
         return self._compiled.rows

@@ -15,6 +15,7 @@ from tenkpc.detector.detector import Detector
 from tenkpc.detector.response import Response
 from tenkpc.forecast.compiled import Compiled, Exposure, by_neutrino_energy, compile_rows
 from tenkpc.forecast.grid import EnergyGrid
+from tenkpc.interactions import coherent
 from tenkpc.interactions.base import Interaction
 
 Floats = NDArray[np.float64]
@@ -38,13 +39,20 @@ def exposures(
         )
         for key in interactions.KEYS:
             value = dict(chosen).get(key, True)
+            if value is False or not _may_have(interactions.TARGETS[key], volume):
+                continue
             interaction = interactions.by_key(key, value if isinstance(value, str) else None)
             scale = 1.0 if isinstance(value, bool | str) else value
-            for reaction in _on(interaction, volume) if value is not False else ():
+            for reaction in _on(interaction, volume):
                 targets = volume.targets(reaction.target) * scale
                 if targets > 0:
                     made.append(Exposure(volume.name, targets, reaction, response))
     return tuple(made)
+
+
+def _may_have(target: str, volume: Volume) -> bool:
+    """Whether a volume may hold a target: an interaction need not be built where it does not."""
+    return target == coherent.EVERY_NUCLEUS or volume.targets(target) > 0
 
 
 def _on(interaction: Interaction, volume: Volume) -> tuple[Interaction, ...]:

@@ -110,6 +110,7 @@ class Forecast(Evaluation):
             self._needs_time("within(time=...)")
             changed["window_s"] = arguments.window_s(time, self.span_s)
         if energy_above is not None:
+            self._needs_energy("within(energy_above=...)")
             scale = self.detector.response.scale
             changed["energy_above_mev"] = arguments.energy_above_mev(energy_above, scale)
         return self.changed(**changed)
@@ -178,14 +179,15 @@ class Forecast(Evaluation):
         kept by efficiency and live time; ``cross_section_low`` and ``cross_section_high``, the
         counted events with the cross section 1σ down and up; ``outside_window``, the share of
         the counted events that comes from neutrino energies beyond what the cross section is
-        meant for.
+        meant for. A detector that counts neutrons has one column more, ``neutrons``, the number
+        of neutrons registered, where ``counted`` is of events with at least one.
         """
-        return frames.counts(self.keys, self.by_interaction)
+        return frames.counts(self.keys, self.by_interaction, neutrons=self.counts_neutrons)
 
     @property
     def breakdown(self) -> DataFrame:
         """Give the columns of `counts` by final state and species, and as what each is seen."""
-        return frames.breakdown(self.rows, self.row_values)
+        return frames.breakdown(self.rows, self.row_values, neutrons=self.counts_neutrons)
 
     def spectrum(
         self,
@@ -218,6 +220,8 @@ class Forecast(Evaluation):
             message = f"of: expected 'observed' or 'neutrino', found {of!r}"
             raise InputError(message)
         observed = of == "observed"
+        if observed:
+            self._needs_energy("spectrum")
         edges = arguments.energy_edges_mev(bins, self.detector.response.scale if observed else MEV)
         names, values = self._spectrum(edges, by, observed=observed)
         kind = self.detector.response.kind if observed else of
@@ -298,6 +302,11 @@ class Forecast(Evaluation):
 
     def _repr_html_(self) -> str:
         return rendering.html(page.results(self))
+
+    def _needs_energy(self, what: str) -> None:
+        if self.detector.response.kind == "none":
+            message = f"{what}: {self.detector.title!r} counts neutrons and observes no energy"
+            raise InputError(message)
 
     def _needs_time(self, what: str) -> None:
         if self.burst.time_integrated:

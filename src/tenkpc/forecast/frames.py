@@ -19,35 +19,38 @@ Floats = NDArray[np.float64]
 Keys = Sequence[str]
 
 
-def named(values: Floats) -> dict[str, Floats]:
+def named(values: Floats, *, neutrons: bool = False) -> dict[str, Floats]:
     """Columns of the tensor under the names that users see; values are (rows, columns)."""
     counted = values[:, columns.FIRST_BIN :].sum(axis=1)
     outside = values[:, columns.COUNTED_OUTSIDE]
     share = np.divide(outside, counted, out=np.zeros_like(counted), where=counted > 0)
+    registered = {"neutrons": values[:, columns.NEUTRONS]} if neutrons else {}
     return {
         "reactions": values[:, columns.REACTIONS],
         "above_threshold": values[:, columns.ABOVE_THRESHOLD],
         "counted": counted,
+        **registered,
         "cross_section_low": values[:, columns.COUNTED_LOW],
         "cross_section_high": values[:, columns.COUNTED_HIGH],
         "outside_window": share,
     }
 
 
-def counts(keys: Keys, values: Floats) -> DataFrame:
+def counts(keys: Keys, values: Floats, *, neutrons: bool) -> DataFrame:
     """Events by interaction, from (interactions, columns)."""
     from pandas import DataFrame, Index
 
-    return DataFrame(named(values), index=Index(keys, name="interaction"))
+    return DataFrame(named(values, neutrons=neutrons), index=Index(keys, name="interaction"))
 
 
-def breakdown(rows: Sequence[columns.Row], values: Floats) -> DataFrame:
+def breakdown(rows: Sequence[columns.Row], values: Floats, *, neutrons: bool) -> DataFrame:
     """Events by volume, interaction, final state and species, from (rows, columns)."""
     from pandas import DataFrame, MultiIndex
 
     names = ("volume", "interaction", "final_state", "species")
     index = [tuple(getattr(row, name) for name in names) for row in rows]
-    table = {"seen_as": [row.seen_as or "not seen" for row in rows], **named(values)}
+    seen_as = [row.seen_as or "not seen" for row in rows]
+    table = {"seen_as": seen_as, **named(values, neutrons=neutrons)}
     return DataFrame(table, index=MultiIndex.from_tuples(index, names=names))
 
 

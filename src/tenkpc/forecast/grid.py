@@ -12,7 +12,7 @@ from dataclasses import dataclass
 from functools import lru_cache
 
 import numpy as np
-from numpy.polynomial.legendre import leggauss, legvander
+from numpy.polynomial.legendre import leg2poly, leggauss, legvander
 from numpy.typing import NDArray
 
 from tenkpc.interactions.base import HIGHEST_ENERGY_MEV
@@ -57,25 +57,37 @@ class EnergyGrid:
         """Weight of each node in ∫ dE, in MeV."""
         return panel_nodes(np.array(self.panels_mev), NODES_PER_PANEL)[1]
 
-    def panel_of(self, energy_mev: float) -> int:
-        """Index of the panel that holds an energy."""
-        last = len(self.panels_mev) - 2
-        return min(max(int(np.searchsorted(self.panels_mev, energy_mev, "right")) - 1, 0), last)
+    def panels_of(self, energy_mev: Floats) -> NDArray[np.intp]:
+        """Index of the panel that holds each energy."""
+        found = np.searchsorted(self.panels_mev, energy_mev, "right") - 1
+        return np.clip(found, 0, len(self.panels_mev) - 2)
 
-    def basis(self, panel: int, energy_mev: Floats) -> Floats:
-        """Lagrange polynomials of a panel's nodes at energies inside it, (..., 12)."""
-        low, high = self.panels_mev[panel], self.panels_mev[panel + 1]
+    def basis(self, panel: int | NDArray[np.intp], energy_mev: Floats) -> Floats:
+        """Lagrange polynomials of the nodes of a panel, one or one for each energy, (..., 12)."""
+        edges = np.array(self.panels_mev)
+        low, high = edges[panel], edges[panel + 1]
         x = 2.0 * (energy_mev - low) / (high - low) - 1.0
-        values: Floats = legvander(x, NODES_PER_PANEL - 1) @ _legendre_coefficients()
+        powers = np.ones((*x.shape, NODES_PER_PANEL))
+        powers[..., 1:] = x[..., None]
+        np.multiply.accumulate(powers, axis=-1, out=powers)
+        values: Floats = powers @ _coefficients()
         return values
 
 
 @lru_cache(maxsize=1)
-def _legendre_coefficients() -> Floats:
-    """Legendre coefficients (rows) of the Lagrange polynomials of the nodes (columns)."""
+def _coefficients() -> Floats:
+    """Coefficients of powers (rows) of the Lagrange polynomials of the nodes (columns).
+
+    Powers lose three digits of fifteen at this degree, and take a third of the time of Legendre
+    polynomials.
+    """
     x, w = leggauss(NODES_PER_PANEL)
     degree = np.arange(NODES_PER_PANEL)
-    return (degree[:, None] + 0.5) * legvander(x, NODES_PER_PANEL - 1).T * w
+    of_legendre = (degree[:, None] + 0.5) * legvander(x, NODES_PER_PANEL - 1).T * w
+    made = np.zeros_like(of_legendre)
+    for column, coefficients in enumerate(of_legendre.T):
+        made[:, column] = leg2poly(coefficients)
+    return made
 
 
 def panel_nodes(panels: Floats, order: int) -> tuple[Floats, Floats]:

@@ -1,9 +1,11 @@
-"""The same forecast with the other flavour conversions, and with the other bursts."""
+"""The same forecast with other flavour conversions, other bursts, and disputed cross sections."""
 
 from __future__ import annotations
 
-from typing import TypeVar
+from collections.abc import Iterator
+from typing import NamedTuple, TypeVar
 
+from tenkpc import interactions
 from tenkpc.forecast.evaluation import Evaluation
 from tenkpc.propagation.conversion import Adiabatic, Conversion, Equilibrated, Unconverted
 from tenkpc.source.burst import Burst
@@ -21,6 +23,28 @@ CASES: tuple[tuple[str, Conversion], ...] = (
 def other_conversions(forecast: Made) -> list[tuple[str, Made]]:
     """Name every other conversion, with the same forecast under it."""
     return [(name, forecast.converted(case)) for name, case in CASES if case != forecast.conversion]
+
+
+class OtherOption(NamedTuple):
+    """What one interaction would count under another of its options."""
+
+    key: str
+    option: str
+    counted: float
+
+
+def other_options(forecast: Evaluation) -> Iterator[OtherOption]:
+    """Count every interaction whose theory and measurement disagree under its other options."""
+    chosen = {**forecast.detector.interactions, **forecast.interactions}
+    for key in interactions.DISPUTED:
+        if key not in forecast.keys:
+            continue
+        options = interactions.OPTIONS[key]
+        now = chosen.get(key, options[0])
+        for option in options:
+            if option != (now if isinstance(now, str) else options[0]):
+                alone = {**dict.fromkeys(interactions.KEYS, False), key: option}
+                yield OtherOption(key, option, forecast.changed(interactions=alone).total)
 
 
 def other_bursts(forecast: Made) -> list[tuple[str, Made]]:

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Collection, Sequence
+from collections.abc import Sequence
 from typing import NamedTuple
 
 import numpy as np
@@ -13,7 +13,12 @@ from tenkpc import interactions
 from tenkpc.forecast import budget, words
 from tenkpc.forecast import compiled as columns
 from tenkpc.forecast.evaluation import Evaluation
-from tenkpc.forecast.others import other_bursts, other_conversions
+from tenkpc.forecast.others import (
+    OtherOption,
+    other_bursts,
+    other_conversions,
+    other_options,
+)
 from tenkpc.rendering import (
     GROUPS,
     Block,
@@ -46,8 +51,9 @@ def results(forecast: Evaluation) -> Page:
         Paragraph(words.opening(forecast)),
         Paragraph(""),
         _chain(forecast),
+        *_volumes(forecast),
         Paragraph(""),
-        _seen(forecast),
+        *_seen(forecast),
         Rule(),
         _uncertainty(forecast),
         *(Paragraph(line) for line in _warnings(forecast)),
@@ -81,7 +87,24 @@ def _chain(forecast: Evaluation) -> Block:
     return Paragraph("  →  ".join(f"{name} {number(value, decimals)}" for name, value in steps))
 
 
-def _seen(forecast: Evaluation) -> Block:
+def _volumes(forecast: Evaluation) -> list[Block]:
+    """Say what each volume counts, where there are several."""
+    names = [volume.name for volume in forecast.detector.volumes]
+    if len(names) == 1:
+        return []
+    counted = forecast.row_values[:, columns.FIRST_BIN :].sum(axis=1)
+    sums = [
+        sum(value for row, value in zip(forecast.rows, counted, strict=True) if row.volume == name)
+        for name in names
+    ]
+    decimals = decimals_for(forecast.total)
+    parts = (
+        f"{number(value, decimals)} in {name}" for name, value in zip(names, sums, strict=True)
+    )
+    return [Paragraph(f"of these {', '.join(parts)}")]
+
+
+def _seen(forecast: Evaluation) -> list[Block]:
     """Rows grouped by what the detector sees, the largest first, with small ones collapsed."""
     decimals, total = decimals_for(forecast.total), forecast.total or 1.0
     rows, small = [], []
@@ -97,11 +120,15 @@ def _seen(forecast: Evaluation) -> Block:
                 small.append(entry)
                 continue
             cells = (interactions.by_key(entry.key).equation, number(entry.counted, decimals))
-            error = f"± {percent(entry.error)}"
+            error = words.factor_or_percent(entry.error)
             rows.append(Row((*cells, percent(share), error), level=1, bar=share))
-    seen = {row.interaction for row in forecast.rows if row.seen_as}
-    rows += _collapsed(small, seen, decimals, total)
-    return Table(tuple(rows), ("seen as", "counted", "share", "cross section"))
+    few = sorted({entry.key for entry in small if entry.counted > 0})
+    if few:
+        counted = sum(entry.counted for entry in small)
+        name = f"smaller: {', '.join(few)}"
+        rows.append(Row((name, number(counted, decimals), percent(counted / total))))
+    table = Table(tuple(rows), ("seen as", "counted", "share", "cross section"))
+    return [table, *_unseen(forecast)]
 
 
 class _Entry(NamedTuple):
@@ -109,7 +136,7 @@ class _Entry(NamedTuple):
 
     key: str
     counted: float
-    error: float  # half the distance between 1σ low and high, relative
+    error: float  # 1σ of the logarithm
 
 
 def _groups(forecast: Evaluation) -> list[tuple[str, list[_Entry]]]:
@@ -124,28 +151,19 @@ def _groups(forecast: Evaluation) -> list[tuple[str, list[_Entry]]]:
         sums[place] = sums.get(place, np.zeros(3)) + np.array([value, *ends])
     groups: dict[str, list[_Entry]] = {}
     for (seen_as, key), (value, low, high) in sums.items():
-        error = 0.5 * (high - low) / max(value, 1e-300)
+        error = 0.5 * math.log(high / low) if low > 0 else 0.0
         groups.setdefault(seen_as, []).append(_Entry(key, float(value), float(error)))
     for entries in groups.values():
         entries.sort(key=lambda entry: -entry.counted)
     return sorted(groups.items(), key=lambda group: -sum(e.counted for e in group[1]))
 
 
-def _collapsed(
-    small: Sequence[_Entry], seen: Collection[str], decimals: int, total: float
-) -> list[Row]:
-    """One line for rows too small to print, one for what the medium does not see at all."""
-    few = sorted({entry.key for entry in small if entry.counted > 0})
-    unseen = sorted({entry.key for entry in small if entry.counted == 0})
-    counted = sum(entry.counted for entry in small)
-    rows = []
-    if few:
-        name = f"smaller: {', '.join(few)}"
-        rows.append(Row((name, number(counted, decimals), percent(counted / total))))
-    if unseen:
-        names = ", ".join(f"part of {key}" if key in seen else key for key in unseen)
-        rows.append(Row((f"not seen: {names}",)))
-    return rows
+def _unseen(forecast: Evaluation) -> list[Block]:
+    """Name what the medium does not see at all."""
+    seen = {row.interaction for row in forecast.rows if row.seen_as}
+    unseen = sorted({row.interaction for row in forecast.rows if not row.seen_as})
+    names = (f"part of {key}" if key in seen else key for key in unseen)
+    return [Paragraph(f"not seen: {', '.join(names)}")] if unseen else []
 
 
 def _uncertainty(forecast: Evaluation) -> Block:
@@ -162,6 +180,7 @@ def _uncertainty(forecast: Evaluation) -> Block:
         if name == "cross sections" and forecast.total > 0:
             rows.append(("both", _both(forecast)))
     if forecast.total > 0:
+        rows += [("disputed", _disputed(other)) for other in other_options(forecast)]
         rows.append(("other conversions", _factors(forecast, other_conversions(forecast))))
         rows.append(("other bursts", _factors(forecast, other_bursts(forecast))))
     if forecast.detector.backgrounds:
@@ -178,6 +197,11 @@ def _error(fall: float, rise: float, total: float) -> str:
 def _both(forecast: Evaluation) -> str:
     span = forecast.predictive
     return f"{number(span.low)} to {number(span.high)} in 68 % of bursts"
+
+
+def _disputed(other: OtherOption) -> str:
+    counted = number(other.counted, decimals_for(other.counted))
+    return f"{counted} of {other.key} if {other.option.replace('-', ' ')}"
 
 
 def _factors(forecast: Evaluation, cases: Sequence[tuple[str, Evaluation]]) -> str:

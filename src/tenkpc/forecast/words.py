@@ -19,6 +19,9 @@ from tenkpc.source.burst import Burst
 
 Assumption = tuple[str, str, str]
 
+# errors from here on are said as factors
+FACTOR_FROM = 0.3
+
 
 def opening(forecast: Evaluation) -> str:
     """Say in one sentence what was counted, where, and of what."""
@@ -84,6 +87,11 @@ def _cut(response: Response, above_mev: float) -> str:
     whose = "" if scale.label else f" of {response.kind} energy"
     both = f" and {response.threshold_beside}" if response.threshold_beside else ""
     return f"above {scale.words(lowest)}{whose}{both}"
+
+
+def factor_or_percent(error: float) -> str:
+    """Print 1σ of a logarithm: per cent where it is small, a factor where it is not."""
+    return f"± {percent(error)}" if error < FACTOR_FROM else f"×÷ {math.exp(error):.2g}"
 
 
 def mass(mass_kg: float) -> str:
@@ -152,7 +160,8 @@ def _of_detector(forecast: Evaluation) -> Iterator[Assumption]:
         yield "  electrons", f"{volume.targets('electron'):.4g}", "composition"
         rows = _of_response(volume.response)
         yield from ((f"  {n}", v, detector.origin) for key, n, v in rows if key in volume.own)
-    yield "observed energy", f"{response.kind} energy", _origin(detector, "energy", given)
+    kind = "none: neutrons are counted" if response.kind == "none" else f"{response.kind} energy"
+    yield "observed energy", kind, _origin(detector, "energy", given)
     yield "threshold", threshold(forecast), _origin(detector, "threshold", given)
     for key, name, value in _of_response(response)[1:]:
         yield name, value, _origin(detector, key, given)

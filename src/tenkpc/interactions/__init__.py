@@ -12,9 +12,9 @@ from typing import Any
 
 from tenkpc import data
 from tenkpc.errors import UnknownNameError
-from tenkpc.interactions import carbon, levels, oxygen
+from tenkpc.interactions import carbon, levels, nucleus_tables, oxygen
 from tenkpc.interactions.base import Interaction
-from tenkpc.interactions.coherent import CoherentInputs, coherent_scattering
+from tenkpc.interactions.coherent import EVERY_NUCLEUS, CoherentInputs, coherent_scattering
 from tenkpc.interactions.electron import ElectronInputs, electron_scattering
 from tenkpc.interactions.inverse_beta import inverse_beta_decay
 from tenkpc.interactions.inverse_beta_kernel import InverseBetaInputs
@@ -26,9 +26,15 @@ OPTIONS: Mapping[str, tuple[str, ...]] = MappingProxyType(
     {
         "coherent-scattering": ("tree", "radiative"),
         "electron-scattering": ("radiative", "tree"),
+        "iodine-to-xenon": ("measurement-scaled", "theory"),
+        "lead-to-bismuth": ("theory", "measurement-scaled"),
         "proton-scattering": ("without-strangeness", "with-strangeness"),
     }
 )
+
+
+# interactions for which theory and measurement disagree, each an option
+DISPUTED = ("iodine-to-xenon", "lead-to-bismuth")
 
 
 @lru_cache(maxsize=64)
@@ -182,7 +188,40 @@ def _level(table: Mapping[str, Any], two_ft: float) -> levels.Level:
     )
 
 
-_BUILDERS: Mapping[str, Callable[[str], Interaction]] = MappingProxyType(
+def _nucleus(name: str, key: str) -> Callable[[str], Interaction]:
+    def built(option: str) -> Interaction:
+        return nucleus_tables.reaction(_nuclei(name), key, option, couplings())
+
+    return built
+
+
+def couplings() -> nucleus_tables.Couplings:
+    """Give the couplings that reactions of nuclei share."""
+    tables = _tables("weak_couplings")
+    return nucleus_tables.Couplings(
+        tables["v_ud"], tables["axial_coupling"], tables["sin2_theta_w"]["at_zero"]
+    )
+
+
+def _nuclei(name: str) -> Mapping[str, Any]:
+    return data.document(f"nuclei/{name}.toml")
+
+
+# file and element of each reaction of a nucleus that is known by its strength
+_NUCLEI: Mapping[str, tuple[str, str]] = MappingProxyType(
+    {
+        "argon-excited": ("argon", "Ar"),
+        "argon-to-chlorine": ("argon", "Ar"),
+        "argon-to-potassium": ("argon", "Ar"),
+        "iodine-to-xenon": ("iodine", "I"),
+        "iron-excited": ("iron", "Fe"),
+        "iron-to-cobalt": ("iron", "Fe"),
+        "iron-to-manganese": ("iron", "Fe"),
+        "lead-excited": ("lead", "Pb"),
+        "lead-to-bismuth": ("lead", "Pb"),
+    }
+)
+_OTHERS: Mapping[str, Callable[[str], Interaction]] = MappingProxyType(
     {
         "carbon-12-excited": _carbon(carbon.excited),
         "carbon-12-to-boron-12": _carbon(carbon.to_boron),
@@ -203,4 +242,21 @@ _BUILDERS: Mapping[str, Callable[[str], Interaction]] = MappingProxyType(
         "proton-scattering": _proton,
     }
 )
+_BUILDERS: Mapping[str, Callable[[str], Interaction]] = MappingProxyType(
+    dict(sorted({**_OTHERS, **{k: _nucleus(file, k) for k, (file, _) in _NUCLEI.items()}}.items()))
+)
 KEYS = tuple(_BUILDERS)
+# target of each interaction, so that none has to be built where its target is not there
+TARGETS: Mapping[str, str] = MappingProxyType(
+    {
+        **{key: symbol for key, (_, symbol) in _NUCLEI.items()},
+        **dict.fromkeys((key for key in KEYS if key.startswith("carbon-12")), carbon.ISOTOPE),
+        **dict.fromkeys((key for key in KEYS if key.startswith("carbon-13")), "C-13"),
+        **dict.fromkeys((key for key in KEYS if key.startswith("oxygen-16")), oxygen.ISOTOPE),
+        "coherent-scattering": EVERY_NUCLEUS,
+        "electron-scattering": "electron",
+        "inverse-beta-decay": "H-1",
+        "oxygen-18-to-fluorine-18": "O-18",
+        "proton-scattering": "H-1",
+    }
+)

@@ -36,6 +36,7 @@ SEEN_AS = {
     "electron": "electron",
     "positron": "positron",
     "gamma": "gamma rays",
+    "neutron": "neutron",
     "proton": "proton recoil",
 }
 
@@ -127,10 +128,11 @@ class FinalState:
     mean_cosine: OfEnergy | None = None
     breaks_mev: tuple[float, ...] = ()
 
-    @property
-    def seen_as(self) -> str:
-        """What a detector that sees the lead particle sees of it, in words."""
+    def seen_as(self, *, gammas: bool = True) -> str:
+        """Say what a detector that sees the lead particle sees, with or without gamma rays."""
         first = SEEN_AS.get(self.lead, "nuclear recoil")
+        if gammas and first != SEEN_AS["gamma"] and "gamma" in dict(self.extras):
+            return f"{first}, gamma rays, neutron" if self.neutrons else f"{first}, gamma rays"
         if self.neutrons:
             return f"{first}, then neutron capture"
         if self.delayed:

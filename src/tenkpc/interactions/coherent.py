@@ -31,6 +31,7 @@ from tenkpc.species import SPECIES
 Floats = NDArray[np.float64]
 
 END_MEV = 100.0
+EVERY_NUCLEUS = "every nucleus but hydrogen"
 # of T/T_max: the form factor of lead has its second zero near 100 MeV, 40 nodes give 1e-12
 NODES = 40
 FM_PER_MEV = 1e-13 / HBAR_C_MEV_CM
@@ -84,7 +85,7 @@ def coherent_scattering(inputs: CoherentInputs) -> Interaction:
     return Interaction(
         key="coherent-scattering",
         equation="ν + A → ν + A",
-        target="every nucleus but hydrogen",
+        target=EVERY_NUCLEUS,
         threshold_mev=0.0,
         references=REFERENCES,
         branches={},

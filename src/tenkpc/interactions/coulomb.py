@@ -41,3 +41,31 @@ def fermi_function(momentum_mev: Floats, charge: int, nucleons: int) -> Floats:
         2 * (1 + root) * (2 * p * radius) ** (2 * root - 2) * spread / gamma(2 * root + 1) ** 2
     )
     return result
+
+
+def effective_momentum(momentum_mev: Floats, charge: int, nucleons: int) -> Floats:
+    """p′E′/(pE) with E′ = E + V in the potential V = 3Zα/2R at the centre of the nucleus.
+
+    For leptons whose wave is short against the nucleus (J. Engel, Phys. Rev. C 57 (1998) 2004);
+    zero where the potential keeps a positron out.
+    """
+    if charge == 0:
+        return np.ones_like(momentum_mev)
+    p = np.maximum(momentum_mev, 1e-3)
+    energy = np.sqrt(p**2 + ELECTRON_MASS_MEV**2)
+    radius = RADIUS_CM * nucleons ** (1 / 3) / HBAR_C_MEV_CM
+    inside = energy + 1.5 * charge * ALPHA / radius
+    square = np.maximum(inside**2 - ELECTRON_MASS_MEV**2, 0.0) * (inside > 0)
+    return np.asarray(np.sqrt(square) * inside / (p * energy))
+
+
+def coulomb_factor(momentum_mev: Floats, charge: int, nucleons: int) -> Floats:
+    """Of `fermi_function` and `effective_momentum` the one nearer to 1: the custom of the field.
+
+    That is the smaller for electrons, the larger for positrons (Z negative).
+    """
+    both = (
+        fermi_function(momentum_mev, charge, nucleons),
+        effective_momentum(momentum_mev, charge, nucleons),
+    )
+    return np.minimum(*both) if charge > 0 else np.maximum(*both)

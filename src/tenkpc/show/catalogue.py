@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 import json
-import math
 from collections.abc import Callable, Iterator, Mapping
 from typing import NamedTuple
 
@@ -13,7 +12,8 @@ from tenkpc import interactions
 from tenkpc.detector import gallery, materials
 from tenkpc.detector.detector import Detector
 from tenkpc.errors import UnknownNameError
-from tenkpc.interactions.base import Interaction
+from tenkpc.forecast.words import factor_or_percent
+from tenkpc.interactions.base import FinalState, Interaction
 from tenkpc.rendering import (
     Facts,
     Page,
@@ -23,7 +23,6 @@ from tenkpc.rendering import (
     Table,
     columns_of,
     pad,
-    percent,
     text,
 )
 from tenkpc.source.burst import Burst
@@ -31,8 +30,6 @@ from tenkpc.species import SPECIES, SYMBOLS
 
 # energies at which a cross section and its error are quoted, MeV
 QUOTED_MEV = np.array([10.0, 20.0, 40.0])
-# errors from here on are said as factors
-FACTOR_FROM = 0.3
 # nuclei on which a reaction of every nucleus is quoted
 EXAMPLES = ("O-16", "Ar-40", "Ge-74", "Xe-132", "Pb-208")
 QUOTED = tuple(f"{energy:g} MeV" for energy in QUOTED_MEV)
@@ -122,7 +119,7 @@ def _examples(interaction: Interaction) -> Iterator[Interaction]:
 def _ways(interaction: Interaction) -> tuple[str, ...]:
     """Ways in which a detector may see an interaction, each once."""
     branches = interaction.branches.values()
-    return tuple(dict.fromkeys(state.seen_as for states in branches for state in states))
+    return tuple(dict.fromkeys(state.seen_as() for states in branches for state in states))
 
 
 def _cross_sections(interaction: Interaction) -> Iterator[Row]:
@@ -133,16 +130,15 @@ def _cross_sections(interaction: Interaction) -> Iterator[Row]:
         alike.setdefault(tuple(map(id, branches[species])), []).append(species)
     for kinds in alike.values():
         yield Row((", ".join(SYMBOLS[species] for species in kinds),))
+        by_label: dict[str, list[FinalState]] = {}
         for state in branches[kinds[0]]:
-            values = [f"{value:.3g}" for value in state.sigma_cm2(QUOTED_MEV)]
-            error = _error(float(state.relative_error(QUOTED_MEV)[1]))
-            window = f"{state.window_mev[0]:.3g} to {state.window_mev[1]:.3g}"
-            yield Row((state.label, *values, error, window), level=1)
-
-
-def _error(error: float) -> str:
-    """Print 1σ of ln σ: per cent where it is small, a factor where it is not."""
-    return f"± {percent(error)}" if error < FACTOR_FROM else f"× or ÷ {math.exp(error):.2g}"
+            by_label.setdefault(state.label, []).append(state)
+        for label, states in by_label.items():
+            total = np.sum([state.sigma_cm2(QUOTED_MEV) for state in states], axis=0)
+            error = factor_or_percent(float(states[0].relative_error(QUOTED_MEV)[1]))
+            low = min(state.window_mev[0] for state in states)
+            window = f"{low:.3g} to {states[0].window_mev[1]:.3g}"
+            yield Row((label, *(f"{value:.3g}" for value in total), error, window), level=1)
 
 
 CATALOGUES: Mapping[str, Catalogue] = {

@@ -103,8 +103,10 @@ def _checks() -> Iterator[Check]:
 
 
 def _check(name: str, entry: Mapping[str, Any]) -> Check:
-    ours = sum(_average(entry, species, spectrum) for species, spectrum in entry["spectra"].items())
-    ours /= entry["unit_cm2"] * (len(entry["spectra"]) if entry.get("mean") else 1)
+    ours = _ours(entry, entry.get("option"))
+    if "over_option" in entry:
+        ours /= _ours(entry, entry["over_option"])
+    ours /= entry["unit_cm2"]
     value = entry["value"]
     below = "error_down" if ours < value else "error_up"
     errors = ("error", "error_statistical", "error_systematic", below)
@@ -116,25 +118,36 @@ def _check(name: str, entry: Mapping[str, Any]) -> Check:
     )
 
 
-def _average(entry: Mapping[str, Any], species: str, spectrum: str) -> float:
+def _ours(entry: Mapping[str, Any], option: str | None) -> float:
+    """Our sum, or mean, over the spectra of an entry, in cm²."""
+    spectra = entry["spectra"].items()
+    total = sum(_average(entry, option, species, spectrum) for species, spectrum in spectra)
+    return total / (len(spectra) if entry.get("mean") else 1)
+
+
+def _average(entry: Mapping[str, Any], option: str | None, species: str, spectrum: str) -> float:
     """Average over a spectrum of the wanted final states, or of σ/E, in cm²."""
     wanted = entry.get("final_states")
     energy, weight = SPECTRA[spectrum](entry)
     if entry.get("per_energy"):
         weight = weight / (weight @ energy)
+    if "between_mev" in entry:
+        low, high = entry["between_mev"]
+        weight = weight * ((energy > low) & (energy < high))
+        weight = weight / weight.sum()
     return float(
         sum(
             share * (weight @ state.sigma_cm2(energy))
-            for share, made in _reactions(entry)
+            for share, made in _reactions(entry, option)
             for state in made.final_states(species)
             if wanted is None or state.label in wanted
         )
     )
 
 
-def _reactions(entry: Mapping[str, Any]) -> Iterator[tuple[float, Interaction]]:
+def _reactions(entry: Mapping[str, Any], option: str | None) -> Iterator[tuple[float, Interaction]]:
     """Give the interaction of an entry, or that on each nucleus of a substance with its share."""
-    made = interactions.by_key(entry["interaction"], entry.get("option"))
+    made = interactions.by_key(entry["interaction"], option)
     if made.of_nucleus is None:
         yield 1.0, made
         return
