@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from pathlib import Path
 
 import pytest
@@ -52,9 +53,10 @@ def test_distances_come_in_the_unit_that_suits(distance, words):
 
 def test_small_rows_are_collapsed():
     """A row below two parts in a thousand is named in one line at the end."""
-    assert "smaller: electron-scattering" in page(interactions={"electron-scattering": 0.01})
+    text = page(interactions={"electron-scattering": 0.01})
+    assert re.search(r"smaller, together [^:]*: [^\n]*\n?[^\n]*electron-scattering", text)
 
 
 def test_what_the_medium_does_not_see_is_named():
     """Recoils give no Cherenkov light: one line says so, and no total holds them."""
-    assert "not seen: coherent-scattering, proton-scattering" in page()
+    assert "not seen: coherent-scattering, deuteron-breakup, proton-scattering" in page()

@@ -285,20 +285,22 @@ def _spread(
 ) -> Iterator[Part]:
     kinetic, kinetic_weight = _cell_nodes(edges)
     lowest, highest = deposit.lowest_mev(kinetic), deposit.highest_mev(kinetic)
+    after = np.minimum(lowest + deposit.steep_mev, highest)
     for panel, low, high in _pieces(state, grid, breaks):
-        start, end = np.maximum(lowest, low), np.minimum(highest, high)
-        some = (end > start) & (kinetic_weight > 0)
-        whole = some & (end - start == grid.panels_mev[panel + 1] - grid.panels_mev[panel])
-        for at in (np.flatnonzero(whole), np.flatnonzero(some & ~whole)):
-            if at.size == 0:
-                continue
-            if whole[at[0]]:
-                weights = _whole_panel(state, deposit, grid, panel, kinetic[at])
-            else:
-                stretch = (start[at, None], end[at, None], kinetic[at, None])
-                weights = _part_of_panel(state, deposit, grid, panel, stretch, order)
-            weights *= kinetic_weight[at, None, None]
-            yield Part(panel, low, high, at // PER_CELL, weights[:, CENTRAL], weights)
+        for bottom, top in ((lowest, after), (after, highest)):
+            start, end = np.maximum(bottom, low), np.minimum(top, high)
+            some = (end > start) & (kinetic_weight > 0)
+            whole = some & (end - start == grid.panels_mev[panel + 1] - grid.panels_mev[panel])
+            for at in (np.flatnonzero(whole), np.flatnonzero(some & ~whole)):
+                if at.size == 0:
+                    continue
+                if whole[at[0]]:
+                    weights = _whole_panel(state, deposit, grid, panel, kinetic[at])
+                else:
+                    stretch = (start[at, None], end[at, None], kinetic[at, None])
+                    weights = _part_of_panel(state, deposit, grid, panel, stretch, order)
+                weights *= kinetic_weight[at, None, None]
+                yield Part(panel, low, high, at // PER_CELL, weights[:, CENTRAL], weights)
 
 
 def _whole_panel(

@@ -122,13 +122,8 @@ def _seen(forecast: Evaluation) -> list[Block]:
             cells = (interactions.by_key(entry.key).equation, number(entry.counted, decimals))
             error = words.factor_or_percent(entry.error)
             rows.append(Row((*cells, percent(share), error), level=1, bar=share))
-    few = sorted({entry.key for entry in small if entry.counted > 0})
-    if few:
-        counted = sum(entry.counted for entry in small)
-        name = f"smaller: {', '.join(few)}"
-        rows.append(Row((name, number(counted, decimals), percent(counted / total))))
     table = Table(tuple(rows), ("seen as", "counted", "share", "cross section"))
-    return [table, *_unseen(forecast)]
+    return [table, *_smaller(small, decimals, total), *_unseen(forecast)]
 
 
 class _Entry(NamedTuple):
@@ -156,6 +151,14 @@ def _groups(forecast: Evaluation) -> list[tuple[str, list[_Entry]]]:
     for entries in groups.values():
         entries.sort(key=lambda entry: -entry.counted)
     return sorted(groups.items(), key=lambda group: -sum(e.counted for e in group[1]))
+
+
+def _smaller(small: Sequence[_Entry], decimals: int, total: float) -> list[Block]:
+    """Name what is too small for a row, with what it counts together."""
+    few = sorted({entry.key for entry in small if entry.counted > 0})
+    counted = sum(entry.counted for entry in small)
+    together = f"{number(counted, decimals)}, {percent(counted / total)}"
+    return [Paragraph(f"smaller, together {together}: {', '.join(few)}")] if few else []
 
 
 def _unseen(forecast: Evaluation) -> list[Block]:

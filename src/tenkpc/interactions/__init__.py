@@ -12,7 +12,7 @@ from typing import Any
 
 from tenkpc import data
 from tenkpc.errors import UnknownNameError
-from tenkpc.interactions import carbon, levels, nucleus_tables, oxygen
+from tenkpc.interactions import carbon, deuteron, levels, nucleus_tables, oxygen
 from tenkpc.interactions.base import Interaction
 from tenkpc.interactions.coherent import EVERY_NUCLEUS, CoherentInputs, coherent_scattering
 from tenkpc.interactions.electron import ElectronInputs, electron_scattering
@@ -65,6 +65,36 @@ def _inverse_beta(_: str) -> Interaction:
     couplings = _tables("weak_couplings")
     del couplings["sin2_theta_w"]
     return inverse_beta_decay(InverseBetaInputs(**couplings))
+
+
+def _deuteron_table(name: str, column: str = "sigma") -> deuteron.Table:
+    tables = _tables("deuteron")
+    errors = tables["relative_error"]
+    return deuteron.Table(
+        threshold_mev=tables[name]["threshold_mev"],
+        energy_mev=tuple(tables["energy_mev"]),
+        sigma=tuple(tables[name][column]),
+        error_mev=tuple(errors["energy_mev"]),
+        error=tuple(errors["error"]),
+    )
+
+
+def _deuteron(
+    name: str, build: Callable[[deuteron.Table, deuteron.Lepton], Interaction]
+) -> Callable[[str], Interaction]:
+    def built(_: str) -> Interaction:
+        reaction = _tables("deuteron")[name]
+        moments = {key: tuple(values) for key, values in reaction["lepton"].items()}
+        lepton = deuteron.Lepton(**moments, scattering_length_fm=reaction["scattering_length_fm"])
+        return build(_deuteron_table(name), lepton)
+
+    return built
+
+
+def _breakup(_: str) -> Interaction:
+    return deuteron.breakup(
+        _deuteron_table("breakup", "neutrino"), _deuteron_table("breakup", "antineutrino")
+    )
 
 
 def _electron(option: str) -> Interaction:
@@ -231,6 +261,9 @@ _OTHERS: Mapping[str, Callable[[str], Interaction]] = MappingProxyType(
             "carbon-13-to-nitrogen-13", levels.carbon_13_to_nitrogen
         ),
         "coherent-scattering": _coherent,
+        "deuteron-breakup": _breakup,
+        "deuteron-to-two-neutrons": _deuteron("to_two_neutrons", deuteron.to_two_neutrons),
+        "deuteron-to-two-protons": _deuteron("to_two_protons", deuteron.to_two_protons),
         "electron-scattering": _electron,
         "inverse-beta-decay": _inverse_beta,
         "oxygen-16-excited": _oxygen(oxygen.excited),
@@ -253,6 +286,7 @@ TARGETS: Mapping[str, str] = MappingProxyType(
         **dict.fromkeys((key for key in KEYS if key.startswith("carbon-12")), carbon.ISOTOPE),
         **dict.fromkeys((key for key in KEYS if key.startswith("carbon-13")), "C-13"),
         **dict.fromkeys((key for key in KEYS if key.startswith("oxygen-16")), oxygen.ISOTOPE),
+        **dict.fromkeys((key for key in KEYS if key.startswith("deuteron")), deuteron.ISOTOPE),
         "coherent-scattering": EVERY_NUCLEUS,
         "electron-scattering": "electron",
         "inverse-beta-decay": "H-1",

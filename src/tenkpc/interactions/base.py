@@ -71,11 +71,15 @@ class Spread:
         E inside the bounds and must be smooth there.
     lowest_mev, highest_mev
         the lowest and highest neutrino energy in MeV that can give the kinetic energy T.
+    steep_mev
+        so far above the lowest energy, MeV, the differential cross section is steep and is
+        integrated by itself.
     """
 
     differential: Callable[[Floats, Floats], Floats]
     lowest_mev: OfEnergy
     highest_mev: OfEnergy
+    steep_mev: float = 0.0
 
 
 Deposit = Fixed | Shifted | Spread
