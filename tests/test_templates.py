@@ -6,9 +6,10 @@ import re
 
 import pytest
 
-from tenkpc import Burst, Detector, Forecast, templates
+from tenkpc import Burst, Detector, Forecast, data, interactions, templates
 from tenkpc.detector.detector_file import BackgroundKeys, DetectorKeys, UncertaintyKeys, VolumeKeys
 from tenkpc.detector.media import MEDIA
+from tenkpc.detector.own_reactions import InteractionKeys, OwnNucleusKeys
 from tenkpc.detector.response_file import ResponseKeys, YieldKeys
 from tenkpc.source.burst_file import CoreKeys, IntegratedKeys, PeakKeys, TwoPhaseKeys
 
@@ -53,7 +54,16 @@ def test_every_medium_has_one():
     [
         (
             DETECTORS.values(),
-            (DetectorKeys, VolumeKeys, ResponseKeys, BackgroundKeys, UncertaintyKeys, YieldKeys),
+            (
+                DetectorKeys,
+                VolumeKeys,
+                ResponseKeys,
+                BackgroundKeys,
+                UncertaintyKeys,
+                YieldKeys,
+                InteractionKeys,
+                OwnNucleusKeys,
+            ),
         ),
         ([BURST], (PeakKeys, CoreKeys, TwoPhaseKeys, IntegratedKeys)),
     ],
@@ -111,6 +121,19 @@ def test_alternatives_of_the_detector_are_valid(medium, tmp_path):
             Detector.parse(with_alternative(text, key, value), folder=str(tmp_path))
             tried += 1
     assert tried >= 5
+
+
+def test_own_reactions_of_the_detector_are_valid(tmp_path):
+    """The block of reactions of one's own, with a table and a nucleus beside it."""
+    (tmp_path / "sigma.csv").write_text("E,xs\n6,0.1\n20,8\n60,90\n")
+    strange = data.text("nuclei/argon.toml").replace('stands_for = "Ar"', 'stands_for = "Ne"')
+    for key in interactions.KEYS:
+        strange = strange.replace(f'"{key}"', f'"own-{key}"')
+        strange = strange.replace(f"reactions.{key}", f"reactions.own-{key}")
+    (tmp_path / "nucleus.toml").write_text(strange)
+    made = Detector.parse(DETECTORS["scintillator"].replace("#+ ", ""), folder=str(tmp_path))
+    assert made.own[0].key == "my-reaction"
+    assert len(made.own) == 4
 
 
 def test_alternatives_of_the_burst_are_valid():

@@ -99,12 +99,13 @@ def forecast(
     from tenkpc.forecast.forecast import Forecast
     from tenkpc.propagation.conversion import parse
 
+    described = _detector(detector)
     made = Forecast(
-        _detector(detector),
+        described,
         _burst(burst),
         distance=distance,
         conversion=parse(conversion, ordering),
-        interactions=_only(only),
+        interactions=_only(only, described),
     )
     if between:
         made = made.within(time=between)
@@ -193,15 +194,13 @@ def _burst(name: str) -> Burst:
     return made
 
 
-def _only(keys: Sequence[str]) -> dict[str, bool]:
+def _only(keys: Sequence[str], detector: Detector) -> dict[str, bool]:
     """Switch every interaction off but the named ones; none named leaves all as they are."""
     if not keys:
         return {}
-    from tenkpc import interactions
-
     for key in keys:
-        interactions.by_key(key)
-    return {key: False for key in interactions.KEYS if key not in keys}
+        detector.reaction(key)
+    return {key: False for key in detector.reactions if key not in keys}
 
 
 def _as_file(made: Forecast, path: Path) -> str:

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 import re
 from dataclasses import dataclass
 from typing import Annotated, Any, TypeAlias
@@ -20,6 +21,7 @@ LARGEST_BIRKS = 0.1
 # that would give the same signal
 _LABELLED = re.compile(r"(?P<energy>.*[A-Za-z]?eV)(?P<label>nr|ee)\s*")
 _QUANTA = re.compile(r"(?P<number>\d+)\s+(?P<quanta>photo)?electrons?\s*")
+_FACTOR = re.compile(r"factor\s+(?P<number>\d+(\.\d*)?)\s*")
 _YIELD = re.compile(
     r"(?P<number>\S+)\s+(?P<quanta>photoelectrons|electrons)\s*/\s*"
     r"(?P<energy>\w*eV)(?P<label>nr|ee)\s*"
@@ -208,6 +210,26 @@ class BirksConstant(_Converted):
 
 
 @dataclass(frozen=True)
+class LogError(_Converted):
+    """1σ of a logarithm: ``"15 %"`` for a small one, ``"factor 1.5"`` for a large one."""
+
+    example: str = "15 %"
+
+    def convert(self, value: object) -> float:
+        """Turn per cent or a factor into the error of a logarithm."""
+        found = _FACTOR.fullmatch(value) if isinstance(value, str) else None
+        error = math.log(float(found["number"])) if found else units.to_fraction(value, "")
+        if error <= 0:
+            message = f"expected an error above zero; found {value!r}"
+            raise InputError(message)
+        return error
+
+    def json_schema(self) -> dict[str, Any]:
+        """Give a text with examples."""
+        return {"type": "string", "examples": [self.example, "factor 1.5"]}
+
+
+@dataclass(frozen=True)
 class Share(_Converted):
     """A share between 0 and 1, written ``0.94`` or ``"94 %"``."""
 
@@ -225,6 +247,7 @@ Energy: TypeAlias = Annotated[float, LabelledEnergy("MeV", "5 MeV", minimum=0.0)
 Rate: TypeAlias = Annotated[float, InUnit("1/s", "40 /day", minimum=0.0)]
 Birks: TypeAlias = Annotated[tuple[float, str], BirksConstant()]
 Density: TypeAlias = Annotated[float, InUnit("g/cm^3", "0.86 g/cm^3", above=0.0)]
+RelativeError: TypeAlias = Annotated[float, LogError()]
 Fraction: TypeAlias = Annotated[float, Share()]
 ThresholdCut: TypeAlias = Annotated[Cut, Threshold()]
 QuantumYield: TypeAlias = Annotated[QuantaPerEnergy, QuantaYield()]

@@ -57,13 +57,18 @@ def dotted(path: Sequence[str | int], document: object = None) -> str:
     words, node = [], document
     for part in path:
         inside = _child(node, part)
-        named = inside.get("name") if isinstance(part, int) and isinstance(inside, dict) else None
+        named = _name(inside) if isinstance(part, int) else None
         if isinstance(part, int):
             words.append(named if isinstance(named, str) and named else str(part + 1))
         else:
             words.append(part)
         node = inside
     return ".".join(words)
+
+
+def _name(table: object) -> object:
+    """Give what an element of an array is called by: its name, or its key."""
+    return table.get("name", table.get("key")) if isinstance(table, dict) else None
 
 
 def as_text(value: object) -> str:
@@ -180,7 +185,7 @@ def _child(node: object, part: str | int) -> object:
 def _step(node: Any, part: str, path: str, origin: str) -> Any:
     """Go one part down; an element of an array is found by its name, a new table is made."""
     if isinstance(node, list):
-        names = {str(e.get("name")): e for e in node if isinstance(e, dict)}
+        names = {str(_name(element)): element for element in node if isinstance(element, dict)}
         if part not in names:
             hint = suggestion(part, names) or f"; there are: {', '.join(names)}"
             raise _nowhere(path, f"none is called {part!r}{hint}", origin)

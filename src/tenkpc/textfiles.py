@@ -13,7 +13,7 @@ import re
 import tomllib
 from collections.abc import Iterable, Iterator, Mapping, Sequence
 from pathlib import Path
-from typing import Any, TypeVar, get_args
+from typing import Any, TypeVar, get_args, get_origin
 
 from pydantic import (
     BaseModel,
@@ -305,12 +305,20 @@ def _tables(
         field = model.model_fields.get(key)
         if field is None:
             continue
-        elements = value if isinstance(value, list) else [value]
-        for place, element in enumerate(elements):
+        for where, element in _elements(value, field.annotation, (*path, key)):
             inner = _model_for(field.annotation, element) if isinstance(element, dict) else None
             if inner is not None:
-                where = (*path, key, place) if isinstance(value, list) else (*path, key)
                 yield from _tables(inner, element, where)
+
+
+def _elements(value: Any, annotation: Any, path: KeyPath) -> Iterator[tuple[KeyPath, Any]]:
+    """Tables of an array, tables by name where names are free, or the one table itself."""
+    if isinstance(value, list):
+        yield from (((*path, place), element) for place, element in enumerate(value))
+    elif get_origin(annotation) is dict and isinstance(value, dict):
+        yield from (((*path, name), element) for name, element in value.items())
+    else:
+        yield path, value
 
 
 def _cross(

@@ -13,14 +13,22 @@ from typing import Any
 from tenkpc import data
 from tenkpc.detector import materials, recoils
 from tenkpc.detector.background import SHAPES, Background, constant, lies_above
-from tenkpc.detector.detector_file import COMPOSITIONS, BackgroundKeys, DetectorKeys, VolumeKeys
+from tenkpc.detector.detector_file import (
+    COMPOSITIONS,
+    BackgroundKeys,
+    DetectorKeys,
+    VolumeKeys,
+    check_choice,
+)
 from tenkpc.detector.materials import Composition
 from tenkpc.detector.media import EVENT_OFFSETS_MEV, MEDIA
+from tenkpc.detector.own_reactions import Own, build, counted_twice
 from tenkpc.detector.quenching import Light, Plain, quenched_protons
 from tenkpc.detector.recoils import Lights, Worth
 from tenkpc.detector.response import Curve, Resolution, Response
 from tenkpc.detector.response_file import EfficiencyKeys, ResponseKeys, joined
 from tenkpc.documents import Document
+from tenkpc.errors import InputError
 from tenkpc.fields import BIRKS_PER_LENGTH
 from tenkpc.interactions.base import HIGHEST_ENERGY_MEV
 
@@ -74,6 +82,41 @@ def volumes(keys: DetectorKeys, document: Document) -> tuple[Volume, ...]:
             )
         )
     return tuple(made)
+
+
+def own_reactions(keys: DetectorKeys, document: Document) -> tuple[Own, ...]:
+    """Build the file's own reactions, and check what the rest of the file says of them.
+
+    Raises
+    ------
+    FileError
+        where one is not usable, or counts the same events as one of the package.
+    """
+    made = build(keys.interaction, keys.nucleus, document)
+    options = {own.key: own.options for own in made}
+    problems: list[tuple[tuple[str | int, ...], str]] = []
+    for key, value in keys.interactions.items():
+        try:
+            check_choice(key, value, options)
+        except InputError as error:
+            problems.append((("interactions", key), str(error)))
+    replaced = {key for own in made for key in own.replaces}
+    problems += [
+        (("interactions", key), f"{key} is replaced, so it cannot be chosen here")
+        for key in sorted(replaced & set(keys.interactions))
+        if keys.interactions[key] is not False and key not in options
+    ]
+    problems += [
+        (
+            ("interaction",) if keys.interaction else ("nucleus",),
+            f'{mine} counts the same events as {key}: say replaces = ["{key}"], or switch that '
+            f"off in [interactions]",
+        )
+        for mine, key in counted_twice(made, keys.interactions)
+    ]
+    if problems:
+        raise document.refused(problems)
+    return made
 
 
 def common(keys: DetectorKeys, document: Document) -> Response:

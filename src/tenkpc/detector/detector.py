@@ -8,14 +8,16 @@ from dataclasses import dataclass, field
 from pathlib import Path
 from types import MappingProxyType
 
-from tenkpc import rendering
+from tenkpc import interactions, rendering
 from tenkpc.detector import assembly, description, gallery
 from tenkpc.detector.assembly import Volume
 from tenkpc.detector.background import Background
 from tenkpc.detector.detector_file import DetectorKeys, UncertaintyKeys
+from tenkpc.detector.own_reactions import Own
 from tenkpc.detector.response import Response
 from tenkpc.detector.response_file import ResponseKeys
 from tenkpc.documents import Document
+from tenkpc.interactions.base import Interaction
 
 
 @dataclass(frozen=True)
@@ -39,6 +41,8 @@ class Detector:
         events recorded without a burst.
     interactions
         switches, factors and options of interactions.
+    own
+        reactions that the file brings.
     quenching
         words for how the light of slow protons and nuclei is reckoned.
     mass_error, efficiency_error, scale_error
@@ -55,6 +59,7 @@ class Detector:
     response: Response = field(compare=False, default_factory=Response)
     backgrounds: tuple[Background, ...] = field(compare=False, default=())
     interactions: Mapping[str, bool | float | str] = field(compare=False, default_factory=dict)
+    own: tuple[Own, ...] = field(compare=False, default=())
     quenching: str = field(compare=False, default="")
     mass_error: float = field(compare=False, default=0.0)
     efficiency_error: float = field(compare=False, default=0.0)
@@ -103,6 +108,7 @@ class Detector:
             response=assembly.common(keys, whole),
             backgrounds=assembly.backgrounds(keys, whole),
             interactions=MappingProxyType(dict(keys.interactions)),
+            own=assembly.own_reactions(keys, whole),
             quenching=_quenching(keys.response),
             mass_error=unsure.mass,
             efficiency_error=unsure.efficiency,
@@ -141,10 +147,34 @@ class Detector:
         """Count the targets of a kind in all volumes."""
         return math.fsum(volume.targets(kind) for volume in self.volumes)
 
+    @property
+    def reactions(self) -> tuple[str, ...]:
+        """Keys of every interaction that may take part, alphabetically."""
+        return tuple(sorted({*interactions.KEYS, *(own.key for own in self.own)}))
+
+    @property
+    def replaced(self) -> frozenset[str]:
+        """Keys of the package that the file's own reactions take the place of."""
+        mine = {own.key for own in self.own}
+        return frozenset(key for own in self.own for key in own.replaces) - mine
+
+    def reaction(self, key: str, option: str | None = None) -> Interaction:
+        """Give an interaction by its key, the file's own or one of the package.
+
+        Raises
+        ------
+        UnknownNameError
+            where there is none of this key, or no such option.
+        """
+        for own in self.own:
+            if own.key == key:
+                return own.under(option)
+        return interactions.by_key(key, option)
+
     def describe(self) -> str:
         """Say what the detector is made of, in kilograms and numbers of targets."""
         title = f"{self.title} ({self.origin})"
-        return rendering.text(description.page(title, self.about, self.volumes))
+        return rendering.text(description.page(title, self.about, self.volumes, self.own))
 
     def __repr__(self) -> str:
         return f"<Detector {self.title!r} from {self.origin}>"

@@ -6,6 +6,7 @@ The models only check; what the numbers mean is decided in `tenkpc.detector.asse
 from __future__ import annotations
 
 from collections.abc import Callable, Iterable, Iterator, Mapping, Sequence
+from types import MappingProxyType
 from typing import Annotated, Any, Literal
 
 from pydantic import Field
@@ -13,6 +14,7 @@ from pydantic import Field
 from tenkpc import interactions
 from tenkpc.detector import energy_rules, materials
 from tenkpc.detector.background import SHAPES
+from tenkpc.detector.own_reactions import InteractionKeys, OwnNucleusKeys
 from tenkpc.detector.response_file import OwnResponseKeys, ResponseKeys, joined
 from tenkpc.errors import InputError, suggestion
 from tenkpc.fields import BIRKS_PER_LENGTH, BirksConstant, Density, Energy, Fraction, Mass, Rate
@@ -105,6 +107,8 @@ class DetectorKeys(Strict):
     volume: tuple[VolumeKeys, ...]
     response: ResponseKeys
     background: tuple[BackgroundKeys, ...] = ()
+    interaction: tuple[InteractionKeys, ...] = ()
+    nucleus: tuple[OwnNucleusKeys, ...] = ()
     interactions: dict[str, bool | float | str] = Field(default_factory=dict)
     uncertainty: UncertaintyKeys = UncertaintyKeys()
 
@@ -115,10 +119,15 @@ class DetectorKeys(Strict):
             yield ("volume",), "expected at least one volume"
         for key in ("volume", "background"):
             yield from _twice(key, _tables(raw, key))
+        own: dict[str, tuple[str, ...]] = {
+            str(table.get("key")): () for table in _tables(raw, "interaction")
+        }
         switched = raw.get("interactions")
         for key, value in (switched if isinstance(switched, dict) else {}).items():
+            if key not in {**interactions.TARGETS, **own} and raw.get("nucleus"):
+                continue  # a key of the nucleus's file, which is checked once that is read
             try:
-                check_choice(key, value)
+                check_choice(key, value, own)
             except InputError as error:
                 yield ("interactions", key), str(error)
         response = raw.get("response")
@@ -132,22 +141,26 @@ class DetectorKeys(Strict):
                 yield from _responses(place, volume, response, own)
 
 
-def check_choice(key: str, value: object) -> None:
+def check_choice(
+    key: str, value: object, own: Mapping[str, tuple[str, ...]] = MappingProxyType({})
+) -> None:
     """Check one line of ``[interactions]``: a switch, a factor or the name of an option.
+
+    ``own`` holds the options of a file's own reactions by their keys.
 
     Raises
     ------
     InputError
         where there is no such interaction or option, or the factor is not a positive number.
     """
-    if key not in interactions.KEYS:
-        known = ", ".join(interactions.KEYS)
-        message = f"no interaction has this key{suggestion(key, interactions.KEYS)}; known: {known}"
+    every = (*interactions.KEYS, *own)
+    if key not in every:
+        message = f"no interaction has this key{suggestion(key, every)}; known: {', '.join(every)}"
         raise InputError(message)
     if isinstance(value, bool):
         return
     if isinstance(value, str):
-        options = interactions.OPTIONS.get(key, ())
+        options = own.get(key, interactions.OPTIONS.get(key, ()))
         if value not in options:
             allowed = ", ".join(options) or "none"
             message = (

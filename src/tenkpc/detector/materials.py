@@ -71,6 +71,19 @@ def nucleus(nuclide: Nuclide | str) -> Nucleus:
     return Nucleus(nuclide.name, nuclide.protons, nuclide.nucleons, mass)
 
 
+def no_target(name: str) -> str:
+    """Say why a name is not that of electrons, an element or an isotope; nothing where it is."""
+    if name == "electron":
+        return ""
+    try:
+        found = {symbol(nuclide.name) for nuclide, _ in atoms(name)}
+    except InputError as error:
+        return str(error)
+    if len(found) == 1 and name.partition("-")[0] in found:
+        return ""
+    return f"{name!r} is no electron, element or isotope such as 'Ar' or 'Pb-208'"
+
+
 def symbol(nuclide: str) -> str:
     """Symbol of a nuclide's element: ``"Pb"`` of ``"Pb-208"``."""
     return nuclide.partition("-")[0]

@@ -10,7 +10,6 @@ from __future__ import annotations
 from collections.abc import Iterator
 from typing import TYPE_CHECKING, NamedTuple
 
-from tenkpc import interactions
 from tenkpc.forecast import compiled as columns
 from tenkpc.forecast.evaluation import Evaluation
 from tenkpc.forecast.uncertainty import in_quadrature
@@ -50,7 +49,7 @@ def cross_sections(forecast: Evaluation) -> Iterator[Effect]:
     for key, value, row in rows:
         if value > 0:
             fall, rise = value - row[columns.COUNTED_LOW], row[columns.COUNTED_HIGH] - value
-            source = str(interactions.by_key(key).references[0])
+            source = str(forecast.detector.reaction(key).references[0])
             yield Effect(key, "cross section", fall, rise, "over all energies", source)
 
 

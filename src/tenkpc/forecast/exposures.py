@@ -37,11 +37,11 @@ def exposures(
         response = responses.setdefault(
             id(volume.response), _cut(volume.response, energy_above_mev)
         )
-        for key in interactions.KEYS:
-            value = dict(chosen).get(key, True)
-            if value is False or not _may_have(interactions.TARGETS[key], volume):
+        for key in detector.reactions:
+            value = dict(chosen).get(key, key not in detector.replaced)
+            if value is False or not _may_have(interactions.TARGETS.get(key), volume):
                 continue
-            interaction = interactions.by_key(key, value if isinstance(value, str) else None)
+            interaction = detector.reaction(key, value if isinstance(value, str) else None)
             scale = 1.0 if isinstance(value, bool | str) else value
             for reaction in _on(interaction, volume):
                 targets = volume.targets(reaction.target) * scale
@@ -50,9 +50,9 @@ def exposures(
     return tuple(made)
 
 
-def _may_have(target: str, volume: Volume) -> bool:
+def _may_have(target: str | None, volume: Volume) -> bool:
     """Whether a volume may hold a target: an interaction need not be built where it does not."""
-    return target == coherent.EVERY_NUCLEUS or volume.targets(target) > 0
+    return target in (None, coherent.EVERY_NUCLEUS) or volume.targets(target) > 0
 
 
 def _on(interaction: Interaction, volume: Volume) -> tuple[Interaction, ...]:

@@ -83,8 +83,9 @@ class Forecast(Evaluation):
         self.window_s: tuple[float, float] | None = None
         self.energy_above_mev: float | None = None
         self.background_time_s = arguments.background_time_s(background_time)
+        options = {own.key: own.options for own in detector.own}
         for key, value in self.interactions.items():
-            check_choice(key, value)
+            check_choice(key, value, options)
 
     def at(self, distance: Quantity) -> Forecast:
         """Forecast the same burst at another distance."""

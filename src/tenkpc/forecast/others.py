@@ -26,7 +26,10 @@ def other_conversions(forecast: Made) -> list[tuple[str, Made]]:
 
 
 class OtherOption(NamedTuple):
-    """What one interaction would count under another of its options."""
+    """What one interaction would count under another of its options.
+
+    No option stands for the package's own, where a file has one in its place.
+    """
 
     key: str
     option: str
@@ -34,17 +37,24 @@ class OtherOption(NamedTuple):
 
 
 def other_options(forecast: Evaluation) -> Iterator[OtherOption]:
-    """Count every interaction whose theory and measurement disagree under its other options."""
+    """Count disputed interactions under their other options, and those that a file replaces."""
     chosen = {**forecast.detector.interactions, **forecast.interactions}
     for key in interactions.DISPUTED:
-        if key not in forecast.keys:
+        if key not in forecast.keys or key in {own.key for own in forecast.detector.own}:
             continue
         options = interactions.OPTIONS[key]
         now = chosen.get(key, options[0])
         for option in options:
             if option != (now if isinstance(now, str) else options[0]):
-                alone = {**dict.fromkeys(interactions.KEYS, False), key: option}
-                yield OtherOption(key, option, forecast.changed(interactions=alone).total)
+                yield OtherOption(key, option, _alone(forecast, key, option))
+    for key in sorted(forecast.detector.replaced):
+        yield OtherOption(key, "", _alone(forecast, key, True))
+
+
+def _alone(forecast: Evaluation, key: str, value: bool | str) -> float:
+    """Count one interaction and no other."""
+    switched = {**dict.fromkeys(forecast.detector.reactions, False), key: value}
+    return forecast.changed(interactions=switched).total
 
 
 def other_bursts(forecast: Made) -> list[tuple[str, Made]]:

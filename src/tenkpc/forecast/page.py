@@ -9,7 +9,6 @@ from typing import NamedTuple
 import numpy as np
 from numpy.typing import NDArray
 
-from tenkpc import interactions
 from tenkpc.forecast import budget, words
 from tenkpc.forecast import compiled as columns
 from tenkpc.forecast.evaluation import Evaluation
@@ -67,9 +66,10 @@ def assumptions(forecast: Evaluation) -> Page:
     facts = tuple(
         (name, f"{value} ({origin})") for name, value, origin in words.assumptions(forecast)
     )
+    reactions = ((key, forecast.detector.reaction(key)) for key in forecast.keys)
     sources = tuple(
-        (key, "; ".join(f"{r}, for {r.used_for}" for r in interactions.by_key(key).references))
-        for key in forecast.keys
+        (key, "; ".join(f"{r}, for {r.used_for}" for r in made.references))
+        for key, made in reactions
     )
     return [
         Paragraph(words.opening(forecast)),
@@ -119,7 +119,8 @@ def _seen(forecast: Evaluation) -> list[Block]:
             if share < SMALL_SHARE:
                 small.append(entry)
                 continue
-            cells = (interactions.by_key(entry.key).equation, number(entry.counted, decimals))
+            equation = forecast.detector.reaction(entry.key).equation
+            cells = (equation, number(entry.counted, decimals))
             error = words.factor_or_percent(entry.error)
             rows.append(Row((*cells, percent(share), error), level=1, bar=share))
     table = Table(tuple(rows), ("seen as", "counted", "share", "cross section"))
@@ -183,7 +184,8 @@ def _uncertainty(forecast: Evaluation) -> Block:
         if name == "cross sections" and forecast.total > 0:
             rows.append(("both", _both(forecast)))
     if forecast.total > 0:
-        rows += [("disputed", _disputed(other)) for other in other_options(forecast)]
+        for other in other_options(forecast):
+            rows.append(("disputed" if other.option else "replaced", _otherwise(other)))
         rows.append(("other conversions", _factors(forecast, other_conversions(forecast))))
         rows.append(("other bursts", _factors(forecast, other_bursts(forecast))))
     if forecast.detector.backgrounds:
@@ -202,9 +204,10 @@ def _both(forecast: Evaluation) -> str:
     return f"{number(span.low)} to {number(span.high)} in 68 % of bursts"
 
 
-def _disputed(other: OtherOption) -> str:
+def _otherwise(other: OtherOption) -> str:
     counted = number(other.counted, decimals_for(other.counted))
-    return f"{counted} of {other.key} if {other.option.replace('-', ' ')}"
+    how = f"if {other.option.replace('-', ' ')}" if other.option else "of the package"
+    return f"{counted} of {other.key} {how}"
 
 
 def _factors(forecast: Evaluation, cases: Sequence[tuple[str, Evaluation]]) -> str:

@@ -7,7 +7,7 @@ import warnings
 from collections.abc import Mapping
 from typing import Any, TypeVar
 
-from tenkpc import __version__, data, interactions
+from tenkpc import __version__, data
 from tenkpc.detector.detector import Detector
 from tenkpc.documents import Document
 from tenkpc.errors import InputError
@@ -92,7 +92,7 @@ def _record(forecast: Evaluation) -> dict[str, Any]:
         "background": {"live_s": forecast.live_s, "counted": forecast.background_events},
         "counts": _counts(forecast),
         "sources": {
-            key: [str(source) for source in interactions.by_key(key).references]
+            key: [str(source) for source in forecast.detector.reaction(key).references]
             for key in forecast.keys
         },
     }

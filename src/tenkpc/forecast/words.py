@@ -6,7 +6,6 @@ import math
 import shlex
 from collections.abc import Iterator
 
-from tenkpc import interactions
 from tenkpc.detector import gallery
 from tenkpc.detector.detector import Detector
 from tenkpc.detector.media import MEDIA
@@ -196,7 +195,7 @@ def largest_sources(forecast: Evaluation, most: int) -> list[tuple[str, tuple[Re
     """Sources of the interactions that count most, the largest first."""
     ranked = sorted(zip(forecast.counted, forecast.keys, strict=True), key=lambda pair: -pair[0])
     keys = [key for count, key in ranked[:most] if count > 0]
-    return [(key, interactions.by_key(key).references) for key in keys]
+    return [(key, forecast.detector.reaction(key).references) for key in keys]
 
 
 def command(forecast: Evaluation) -> str:
