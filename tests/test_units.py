@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import re
+
 import pint
 import pytest
 from hypothesis import given
@@ -122,3 +124,18 @@ def test_nothing_is_defined_in_the_users_registry():
     """After use a knot is still a knot there."""
     mass("3 kt")
     assert pint.get_application_registry().Quantity("1 kt").check("[speed]")
+
+
+@pytest.mark.parametrize(
+    ("words", "unit"),
+    [(w, u) for known in units._COMMON.values() for w in known for u in known if w != u],
+)
+def test_common_units_are_those_of_pint(words, unit):
+    """Every factor that is known beside pint is pint's to 1e-11, its parsec being that much off."""
+    spelled = {"kt": "kilotonne", "kton": "kilotonne", "kiloton": "kilotonne"}
+    spelled |= {"Mt": "megatonne", "Mton": "megatonne"}
+    words_of_pint, unit_of_pint = (
+        re.sub(r"^/", "1/", spelled.get(name, name)) for name in (words, unit)
+    )
+    expected = units.registry().Quantity(f"1 * ({words_of_pint})").to(unit_of_pint).magnitude
+    assert units.to_float(f"1 {words}", unit, "", "") == pytest.approx(float(expected), rel=1e-11)

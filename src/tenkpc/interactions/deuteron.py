@@ -45,6 +45,8 @@ END_MEV = 100.0
 UNIT_CM2 = 1e-42
 # nodes over ε, in its root: 1e-8 of the norm
 NODES = 48
+# knots of the norm against the energy above the threshold, MeV: 1e-5 between them
+NORM_MEV, NORM_KNOTS = (1e-6, 250.0), 3000
 # the two nucleons attract each other below this energy, MeV
 STEEP_MEV = 3.0
 # between these b is sought, MeV
@@ -134,19 +136,22 @@ class Spectrum:
         energies = np.array(lepton.energy_mev)
         wanted = energies - table.threshold_mev + ELECTRON_MASS_MEV - np.array(lepton.mean_mev)
         self.curve = Monotone.through(energies, np.log(self._solved(energies, wanted)))
+        above = np.geomspace(*NORM_MEV, NORM_KNOTS)
+        norms = self._moments(above + table.threshold_mev, self._b(above + table.threshold_mev))[0]
+        self.norm = Monotone.through(np.log(above), np.log(norms))
 
     def differential(self, neutrino_mev: Floats, kinetic_mev: Floats) -> Floats:
         """dσ/dT in cm²/MeV where the neutrino's energy suffices."""
         b = self._b(neutrino_mev)
-        norm = self._moments(neutrino_mev, b)[0]
+        above = np.maximum(neutrino_mev - self.table.threshold_mev, NORM_MEV[0])
+        norm = np.exp(self.norm(np.log(above)))
         pair = np.maximum(neutrino_mev - self.table.threshold_mev - kinetic_mev, 0.0)
         shape = np.sqrt(pair) * self._rest(pair, kinetic_mev, b)
         result: Floats = self.table.sigma_cm2(neutrino_mev) / norm * shape
         return result
 
     def _b(self, neutrino_mev: Floats) -> Floats:
-        knots = self.curve.x
-        return np.exp(self.curve(np.clip(neutrino_mev, knots[0], knots[-1])))
+        return np.exp(self.curve(np.minimum(neutrino_mev, END_MEV)))
 
     def _rest(self, pair_mev: Floats, kinetic_mev: Floats, b: Floats) -> Floats:
         """P E_l/[(ε + b)² (ε + ε_s)]."""
