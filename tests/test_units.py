@@ -128,7 +128,7 @@ def test_nothing_is_defined_in_the_users_registry():
 
 @pytest.mark.parametrize(
     ("words", "unit"),
-    [(w, u) for known in units._COMMON.values() for w in known for u in known if w != u],
+    [(w, u) for known in units._COMMON.values() for w in known for u in known if w[0] != "1"],
 )
 def test_common_units_are_those_of_pint(words, unit):
     """Every factor that is known beside pint is pint's to 1e-11, its parsec being that much off."""
