@@ -10,7 +10,7 @@ one sum over the nodes.
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Iterator, Sequence
+from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -128,36 +128,44 @@ class _Shares:
         return _Shares(self.bins * accepted[:, None], *(share * accepted for share in each))
 
 
-@dataclass(frozen=True, eq=False)
-class _Cells:
-    """Cells of visible energy and what a response makes of each."""
-
-    edges: Floats
-    shares: _Shares
-
-    @classmethod
-    def of(
-        cls, response: Response, edges_mev: Floats, starts_mev: Iterable[float], cells: str
-    ) -> _Cells:
-        edges = cell_edges([*edges_mev, *response.knots_mev, *starts_mev], cells)
-        return cls(edges, _Shares.of(response, edges[:-1], edges[1:], edges_mev))
-
-
 class _CellsOf:
-    """Cells for every response and kind of particle, each made when it is first needed."""
+    """Cells of visible energy by kind, and what each response makes of them; made when needed.
+
+    Responses share their cells, so that what they see alike is compiled once for all of them.
+    """
 
     def __init__(self, exposures: Sequence[Exposure], edges_mev: Floats) -> None:
         self.exposures, self.edges_mev = exposures, edges_mev
-        self.known: dict[tuple[int, str], _Cells] = {}
+        self.edges: dict[str, Floats] = {}
+        self.shares: dict[tuple[int, str], _Shares] = {}
 
-    def __call__(self, response: Response, state: FinalState) -> _Cells:
-        quenched = isinstance(response.light.get(state.lead), Quenched)
-        cells = "recoil" if response.scale.label else "quenched" if quenched else "plain"
-        key = id(response), cells
-        if key not in self.known:
-            starts = _starts(self.exposures, response)
-            self.known[key] = _Cells.of(response, self.edges_mev, starts, cells)
-        return self.known[key]
+    def __call__(self, response: Response, state: FinalState) -> tuple[Floats, _Shares]:
+        """Edges of the cells for a state's lead particle, and the shares of each."""
+        cells = _kind_of_cells(response, state)
+        if cells not in self.edges:
+            self.edges[cells] = cell_edges([*self.edges_mev, *self._breaks(cells)], cells)
+        edges, key = self.edges[cells], (id(response), cells)
+        if key not in self.shares:
+            self.shares[key] = _Shares.of(response, edges[:-1], edges[1:], self.edges_mev)
+        return edges, self.shares[key]
+
+    def _breaks(self, cells: str) -> set[float]:
+        """Knots of all responses, and the lowest visible energies of final states they see."""
+        breaks: set[float] = set()
+        for exposure, _, state in _states(self.exposures):
+            response, offset = exposure.response, _offset(exposure.response, state)
+            if offset is None or isinstance(state.deposit, Fixed) or response.counts_neutrons:
+                continue
+            if _kind_of_cells(response, state) == cells:
+                breaks.add(offset + (response.visible(state.lead, 0.0) or 0.0))
+                breaks.update(response.knots_mev)
+        return breaks
+
+
+def _kind_of_cells(response: Response, state: FinalState) -> str:
+    if response.scale.label:
+        return "recoil"
+    return "quenched" if isinstance(response.light.get(state.lead), Quenched) else "plain"
 
 
 def compile_rows(exposures: Sequence[Exposure], grid: EnergyGrid, edges_mev: Floats) -> Compiled:
@@ -173,16 +181,19 @@ def compile_rows(exposures: Sequence[Exposure], grid: EnergyGrid, edges_mev: Flo
         edges of the bins of observed energy, MeV, ascending.
     """
     cells = _CellsOf(exposures, edges_mev)
-    # neutrino kinds that react alike share their final states, so each is compiled once
-    known: dict[tuple[int, int], Floats] = {}
     rows = _rows(exposures)
+    # kinds that react alike share their final states, and volumes may: each is compiled once
+    wanted: dict[int, dict[int, Response]] = {}
+    for exposure, _, state in _states(exposures):
+        wanted.setdefault(id(state), {})[id(exposure.response)] = exposure.response
+    known: dict[int, dict[int, Floats]] = {}
     tensor = np.zeros((len(rows), grid.count, FIRST_BIN + len(edges_mev)))
     for place, members in enumerate(rows.values()):
         for exposure, state in members:
-            key = id(state), id(exposure.response)
-            if key not in known:
-                known[key] = _block(state, exposure.response, grid, cells, edges_mev)
-            tensor[place] += known[key] * exposure.targets
+            if id(state) not in known:
+                responses = list(wanted[id(state)].values())
+                known[id(state)] = _blocks(state, responses, grid, cells, edges_mev)
+            tensor[place] += known[id(state)][id(exposure.response)] * exposure.targets
     species = np.array([SPECIES.index(row.species) for row in rows], dtype=np.intp)
     return Compiled(tuple(rows), species, grid, edges_mev, tensor)
 
@@ -265,50 +276,57 @@ def _offset(response: Response, state: FinalState) -> float | None:
     return response.event_offset_mev + sum(energy for energy in extras if energy is not None)
 
 
-def _starts(exposures: Sequence[Exposure], response: Response) -> set[float]:
-    """Lowest visible energies of the final states that a response sees."""
-    starts = set()
-    for exposure, _, state in _states(exposures):
-        offset = _offset(response, state) if exposure.response is response else None
-        if offset is not None and not isinstance(state.deposit, Fixed):
-            starts.add(offset + (response.visible(state.lead, 0.0) or 0.0))
-    return starts
-
-
-def _block(
+def _blocks(
     state: FinalState,
-    response: Response,
+    responses: Sequence[Response],
     grid: EnergyGrid,
     cells: _CellsOf,
     edges_mev: Floats,
-) -> Floats:
-    """Columns of one row for a single target, shape (nodes, columns)."""
-    block = np.zeros((grid.count, FIRST_BIN + len(edges_mev)))
-    totals, start = total_weights(state, grid), _offset(response, state)
-    block[:, REACTIONS] = totals[CENTRAL]
-    if start is None:
-        return block
-    if response.counts_neutrons:
-        _count_neutrons(block, totals, state, response)
-        return block
-    if isinstance(state.deposit, Fixed):
-        _count_line(block, totals, _line_shares(state, response, edges_mev, start))
-        return block
-    shares, kinetic = _observed(state, response, cells(response, state), start)
-    counted = shares.bins.sum(axis=1, keepdims=True)
-    also = np.stack([shares.above, shares.scale_low, shares.scale_high], axis=1)
-    wanted = {
-        CENTRAL: np.concatenate([also, shares.bins], axis=1),
-        LOW: counted,
-        HIGH: counted,
-        OUTSIDE: counted,
-    }
-    sums = weighted(state, grid, kinetic, wanted)
-    block[:, [ABOVE_THRESHOLD, SCALE_LOW, SCALE_HIGH]] = sums[CENTRAL][:, :3]
-    block[:, FIRST_BIN:] = sums[CENTRAL][:, 3:]
-    for column, variant in ENDS:
-        block[:, column] = sums[variant][:, 0]
-    return block
+) -> dict[int, Floats]:
+    """Columns of a row for a single target, (nodes, columns), by the identity of each response."""
+    totals = total_weights(state, grid)
+    blocks: dict[int, Floats] = {}
+    # responses that see the lead particle alike, by the cells' edges as its kinetic energies
+    alike: dict[bytes, tuple[Floats, list[tuple[Floats, _Shares]]]] = {}
+    for response in responses:
+        block = np.zeros((grid.count, FIRST_BIN + len(edges_mev)))
+        block[:, REACTIONS] = totals[CENTRAL]
+        blocks[id(response)] = block
+        start = _offset(response, state)
+        if start is None:
+            continue
+        if response.counts_neutrons:
+            _count_neutrons(block, totals, state, response)
+        elif isinstance(state.deposit, Fixed):
+            _count_line(block, totals, _line_shares(state, response, edges_mev, start))
+        else:
+            shares, kinetic = _observed(state, response, cells, start)
+            alike.setdefault(kinetic.tobytes(), (kinetic, []))[1].append((block, shares))
+    for kinetic, members in alike.values():
+        _count_spread(state, grid, kinetic, members)
+    return blocks
+
+
+def _count_spread(
+    state: FinalState,
+    grid: EnergyGrid,
+    kinetic_mev: Floats,
+    members: Sequence[tuple[Floats, _Shares]],
+) -> None:
+    """Fill the columns of several responses that share the cells of kinetic energy."""
+    counted = np.stack([shares.bins.sum(axis=1) for _, shares in members], axis=1)
+    also = (np.stack([s.above, s.scale_low, s.scale_high], axis=1) for _, s in members)
+    bins = (shares.bins for _, shares in members)
+    central = [np.concatenate(pair, axis=1) for pair in zip(also, bins, strict=True)]
+    ends = {variant: counted for _, variant in ENDS}
+    wanted = {CENTRAL: np.concatenate(central, axis=1), **ends}
+    sums = weighted(state, grid, kinetic_mev, wanted)
+    each = np.split(sums[CENTRAL], len(members), axis=1)
+    for place, ((block, _), mine) in enumerate(zip(members, each, strict=True)):
+        block[:, [ABOVE_THRESHOLD, SCALE_LOW, SCALE_HIGH]] = mine[:, :3]
+        block[:, FIRST_BIN:] = mine[:, 3:]
+        for column, variant in ENDS:
+            block[:, column] = sums[variant][:, place]
 
 
 def _count_line(block: Floats, totals: Floats, shares: _Shares) -> None:
@@ -331,14 +349,15 @@ def _count_neutrons(block: Floats, totals: Floats, state: FinalState, response: 
 
 
 def _observed(
-    state: FinalState, response: Response, cells: _Cells, start: float
+    state: FinalState, response: Response, cells: _CellsOf, start: float
 ) -> tuple[_Shares, Floats]:
     """Shares of each cell, and the cells' edges as kinetic energies."""
-    kinetic = response.kinetic(state.lead, cells.edges - start)
+    edges, shares = cells(response, state)
+    kinetic = response.kinetic(state.lead, edges - start)
     if state.lead not in response.acceptance:
-        return cells.shares, kinetic
+        return shares, kinetic
     accepted = response.accepted(state.lead, 0.5 * (kinetic[:-1] + kinetic[1:]))
-    return cells.shares.times(accepted), kinetic
+    return shares.times(accepted), kinetic
 
 
 def _line_shares(state: FinalState, response: Response, edges_mev: Floats, start: float) -> _Shares:
@@ -354,5 +373,5 @@ def _kept(
     """Counted share of each cell, and the cells' kinetic edges."""
     if isinstance(state.deposit, Fixed):
         return _line_shares(state, response, EVERYTHING, start).bins.sum(axis=1), np.zeros(2)
-    shares, kinetic = _observed(state, response, cells(response, state), start)
+    shares, kinetic = _observed(state, response, cells, start)
     return shares.bins.sum(axis=1), kinetic
