@@ -8,6 +8,8 @@ asymptotic integrals of the functions and against published totals.
 
 from __future__ import annotations
 
+from functools import lru_cache
+
 import numpy as np
 from numpy.typing import NDArray
 from scipy.special import spence
@@ -17,6 +19,8 @@ from tenkpc.constants import ELECTRON_MASS_MEV as M
 Floats = NDArray[np.float64]
 
 RHO = 1.0126
+# calls whose corrections are kept: as many as one species makes when it is compiled
+REMEMBERED = 24
 
 
 def kappa_electron(kinetic_mev: Floats) -> Floats:
@@ -41,8 +45,24 @@ def _vacuum(kinetic_mev: Floats) -> Floats:
 def corrections(neutrino_mev: Floats, kinetic_mev: Floats) -> tuple[Floats, Floats, Floats]:
     """f₋, (1-z)² f₊ and f₊₋ for a recoil inside its kinematic range, z = T/E.
 
-    All three have a logarithm at the largest recoil, which is integrable.
+    All three have a logarithm at the largest recoil, which is integrable. They know no flavour:
+    the last ones are remembered, since four species ask for the same energies in turn.
     """
+    neutrino, kinetic = np.asarray(neutrino_mev), np.asarray(kinetic_mev)
+    return _remembered(neutrino.tobytes(), neutrino.shape, kinetic.tobytes(), kinetic.shape)
+
+
+@lru_cache(maxsize=REMEMBERED)
+def _remembered(
+    neutrino: bytes, neutrino_shape: tuple[int, ...], kinetic: bytes, kinetic_shape: tuple[int, ...]
+) -> tuple[Floats, Floats, Floats]:
+    return _corrections(
+        np.frombuffer(neutrino).reshape(neutrino_shape),
+        np.frombuffer(kinetic).reshape(kinetic_shape),
+    )
+
+
+def _corrections(neutrino_mev: Floats, kinetic_mev: Floats) -> tuple[Floats, Floats, Floats]:
     z = kinetic_mev / neutrino_mev
     total = kinetic_mev + M
     momentum = np.sqrt(kinetic_mev * (kinetic_mev + 2 * M))
