@@ -40,17 +40,18 @@ def scale_of(raw: Mapping[str, Any]) -> Scale | None:
 
 def response(raw: Mapping[str, Any]) -> Iterator[Problem]:
     """Rules of a whole response."""
-    name, medium = raw.get("medium"), _medium(raw)
+    name, medium = str(raw.get("medium")), _medium(raw)
     if medium is None:
         return
+    whole = f"an {name}" if name[0] in "aeiou" else f"a {name}"
     for key in _OF_MEDIA:
         if key in raw and key not in medium.keys:
-            yield (key,), f"does not belong to a {name}, which has {', '.join(sorted(medium.keys))}"
+            yield (key,), f"does not belong to {whole}, which has {', '.join(sorted(medium.keys))}"
     threshold = raw.get("threshold")
     of = threshold.get("of") if isinstance(threshold, dict) else None
     for path, kind in ((("energy",), raw.get("energy")), (("threshold", "of"), of)):
         if kind is not None and kind not in medium.kinds:
-            yield path, f"a {name} reports {' or '.join(medium.kinds)} energy; found {kind!r}"
+            yield path, f"{whole} reports {' or '.join(medium.kinds)} energy; found {kind!r}"
     if name == "recoil":
         yield from _recoil(raw)
     elif name == "scintillator":

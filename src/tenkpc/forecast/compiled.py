@@ -16,7 +16,6 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from tenkpc.detector.quenching import Quenched
 from tenkpc.detector.response import Response
 from tenkpc.forecast.deposits import (
     CENTRAL,
@@ -141,7 +140,7 @@ class _CellsOf:
 
     def __call__(self, response: Response, state: FinalState) -> tuple[Floats, _Shares]:
         """Edges of the cells for a state's lead particle, and the shares of each."""
-        cells = _kind_of_cells(response, state)
+        cells = _kind_of_cells(state)
         if cells not in self.edges:
             self.edges[cells] = cell_edges([*self.edges_mev, *self._breaks(cells)], cells)
         edges, key = self.edges[cells], (id(response), cells)
@@ -156,16 +155,15 @@ class _CellsOf:
             response, offset = exposure.response, _offset(exposure.response, state)
             if offset is None or isinstance(state.deposit, Fixed) or response.counts_neutrons:
                 continue
-            if _kind_of_cells(response, state) == cells:
+            if _kind_of_cells(state) == cells:
                 breaks.add(offset + (response.visible(state.lead, 0.0) or 0.0))
                 breaks.update(response.knots_mev)
         return breaks
 
 
-def _kind_of_cells(response: Response, state: FinalState) -> str:
-    if response.scale.label:
-        return "recoil"
-    return "quenched" if isinstance(response.light.get(state.lead), Quenched) else "plain"
+def _kind_of_cells(state: FinalState) -> str:
+    """Say which cells a lead particle needs: protons and nuclei recoil with less than a MeV."""
+    return "plain" if state.lead in ("electron", "positron", "gamma") else "recoil"
 
 
 def compile_rows(exposures: Sequence[Exposure], grid: EnergyGrid, edges_mev: Floats) -> Compiled:

@@ -32,9 +32,7 @@ Floats = NDArray[np.float64]
 # widest cells of visible energy, MeV, each up to the energy beside it: twice as wide misses
 # 1e-3 in 1 MeV bins
 CELL_WIDTHS_MEV = ((0.05, 30.0), (0.125, 60.0), (0.25, 100.0), (0.5, HIGHEST_ENERGY_MEV + 2.0))
-# the same for quenched protons, whose spectrum falls by half within 0.3 MeV of visible energy
-QUENCHED_WIDTHS_MEV = ((0.0025, 1.0), (0.01, 4.0), (0.05, 20.0), (0.5, HIGHEST_ENERGY_MEV + 2.0))
-# edges of the cells of nuclear recoils grow by this factor, from the energy beside it in MeV
+# edges of the cells of recoils grow by this factor, from the energy beside it in MeV
 RECOIL_RATIO, LOWEST_RECOIL_MEV = 1.02, 1e-6
 # a line is a deposit this wide: narrow against any resolution, wide against rounding
 LINE_WIDTH_MEV = 1e-4
@@ -89,7 +87,7 @@ class Part:
 def cell_edges(breaks_mev: Iterable[float], cells: str = "plain") -> Floats:
     """Edges of the cells of visible energy in MeV, with every given break among them.
 
-    ``cells`` says for what: ``"plain"``, ``"quenched"`` for protons, ``"recoil"`` for nuclei.
+    ``cells`` says for what: ``"plain"``, or ``"recoil"`` for protons and nuclei.
     """
     edges = _CELLS[cells]()
     inside = [edge for edge in breaks_mev if 0 < edge < edges[-1]]
@@ -117,7 +115,6 @@ def _growing() -> Floats:
 _CELLS: Mapping[str, Callable[[], Floats]] = MappingProxyType(
     {
         "plain": partial(_steps, CELL_WIDTHS_MEV),
-        "quenched": partial(_steps, QUENCHED_WIDTHS_MEV),
         "recoil": _growing,
     }
 )
