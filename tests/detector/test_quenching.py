@@ -10,7 +10,13 @@ from hypothesis import strategies as st
 from tenkpc import data
 from tenkpc.constants import AVOGADRO_PER_MOL, PROTON_MASS_MEV
 from tenkpc.detector import materials
-from tenkpc.detector.quenching import Plain, Quenched, quenched_protons, stopping_mev_cm2_g
+from tenkpc.detector.quenching import (
+    Plain,
+    Quenched,
+    lindhard,
+    quenched_protons,
+    stopping_mev_cm2_g,
+)
 
 TABLE = data.document("stopping/protons.toml")
 ATOMS = {s: n / 1e3 for s, n in materials.elements(materials.of_formula("CH2")).items()}
@@ -88,3 +94,22 @@ def test_other_lights():
     table = Quenched((0.0, 1.0, 3.0), (0.0, 0.2, 1.0))
     assert table.visible(np.array([0.5, 2.0, 5.0])) == pytest.approx([0.1, 0.6, 1.8])
     assert table.kinetic(np.array([-1.0, 0.6, 1.8])) == pytest.approx([0.0, 2.0, 5.0])
+
+
+@pytest.mark.parametrize(
+    ("element", "protons", "nucleons", "k", "expected"),
+    [
+        ("Si", 14, 28.0855, 0.146, (0.190, 0.210, 0.232, 0.268, 0.302)),
+        ("Ar", 18, 39.948, 0.144, (0.174, 0.192, 0.211, 0.242, 0.271)),
+        ("Ge", 32, 72.63, 0.157, (0.156, 0.171, 0.188, 0.213, 0.234)),
+        ("Xe", 54, 131.293, 0.166, (0.139, 0.152, 0.167, 0.188, 0.206)),
+    ],
+)
+def test_lindhard(element, protons, nucleons, k, expected):
+    """Q at 0.5, 1, 2, 5, 10 keV of an independent calculation, with the mean mass number."""
+    kinetic = 1e-3 * np.array([0.5, 1.0, 2.0, 5.0, 10.0])
+    made = lindhard(protons, nucleons)
+    assert made.visible(kinetic) / kinetic == pytest.approx(np.array(expected), abs=6e-4)
+    given = lindhard(protons, nucleons, k)
+    assert given.visible(kinetic) == pytest.approx(made.visible(kinetic), rel=4e-3)
+    assert made.kinetic(made.visible(kinetic)) == pytest.approx(kinetic, rel=1e-9)

@@ -49,6 +49,8 @@ def counted(response, **inputs):
         ('quenching = "lindhardt"', "did you mean 'lindhard'"),
         ('birks = "0.01 cm/MeV"', "does not belong to a recoil, which has charge_yield"),
         ('energy = "total"', "a recoil reports recoil or visible energy"),
+        ("energy = []", "energy"),
+        ("energy = { value = 3 }", "energy"),
         ('threshold = "3 MeVnr"\nlight_yield = 3', "expected a number of electrons"),
     ],
 )

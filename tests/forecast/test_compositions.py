@@ -48,7 +48,7 @@ def test_a_mixture_is_the_sum_of_its_parts(first, second, share):
 def test_counts_are_finite_and_lose_along_the_chain(medium, first, second, energy):
     """Any two volumes, any medium, spectra that reach 200 MeV: 0 ≤ counted ≤ above ≤ reactions.
 
-    Lower and upper cross sections stand on their sides of the counts; 1e-4 is what counts are good to.
+    Lower and upper cross sections stand on their sides of the counts; counts are good to 1e-4.
     """
     text = (
         'title = "x"\n[[volume]]\nname = "v"\nmass = "1 kt"\n'

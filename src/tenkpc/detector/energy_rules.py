@@ -29,7 +29,7 @@ def kind_of(raw: Mapping[str, Any]) -> str | None:
         return None
     of_threshold = KINDS.get(labelled(_value(raw.get("threshold")))[1])
     kind = raw.get("energy", of_threshold or medium.kinds[0])
-    return kind if kind in medium.scales else None
+    return kind if isinstance(kind, str) and kind in medium.scales else None
 
 
 def scale_of(raw: Mapping[str, Any]) -> Scale | None:
