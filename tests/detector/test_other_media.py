@@ -169,6 +169,20 @@ def test_the_page_prints_the_other_option(option):
     assert f"disputed {count:.{decimals}f} of lead-to-bismuth if {other.replace('-', ' ')}" in page
 
 
+def test_every_assumption_is_named():
+    """Efficiency of a counter and containment of gammas, given or not."""
+    counter = forecast("Pb", 'medium = "neutron-counter"\nneutron_efficiency = 0.4')
+    assert "kept by neutron efficiency" in " ".join(repr(counter).split())
+    lines = {" ".join(line.split()) for line in counter.explain().splitlines()}
+    assert "neutron efficiency 40 % (detector)" in lines
+    assert not any(line.startswith("resolution") for line in lines)
+    for key, words in (("", "100 % (default)"), ("gamma_containment = 0.3", "30 % (detector)")):
+        text = forecast("Ar", f'medium = "ionisation"\n{key}').explain()
+        assert f"gamma rays contained {words}" in {
+            " ".join(line.split()) for line in text.splitlines()
+        }
+
+
 def test_a_frame_of_iron_is_a_volume_of_its_own():
     """The liquid and its frame have responses of their own; the page says what each counts."""
     made = Forecast(Detector.gallery("iron-stack"), BURST, distance="10 kpc")

@@ -121,7 +121,9 @@ def own_reactions(keys: DetectorKeys, document: Document) -> tuple[Own, ...]:
 
 def common(keys: DetectorKeys, document: Document) -> Response:
     """Build what `[response]` says of the whole detector; light of recoils belongs to volumes."""
-    return _response(keys.response, ("response",), (), keys.uncertainty.energy_scale, document)
+    given = keys.response
+    light = recoils.with_gammas(given.gamma_containment) if given.medium == "ionisation" else ()
+    return _response(given, ("response",), light, keys.uncertainty.energy_scale, document)
 
 
 def response_keys(keys: DetectorKeys, volume: VolumeKeys) -> ResponseKeys:

@@ -6,6 +6,8 @@ import math
 import shlex
 from collections.abc import Iterator
 
+import numpy as np
+
 from tenkpc.detector import gallery
 from tenkpc.detector.detector import Detector
 from tenkpc.detector.media import MEDIA
@@ -59,6 +61,7 @@ def _counted(forecast: Evaluation) -> str:
     losses = {
         "efficiency": all(_is_unity(r.efficiency) for r in responses),
         "efficiency in true energy": all(_is_unity(r.true_efficiency) for r in responses),
+        "neutron efficiency": all(r.neutron_efficiency in (None, 1.0) for r in responses),
         "live time": all(r.live_fraction == 1 for r in responses),
     }
     names = [name for name, none in losses.items() if not none]
@@ -178,12 +181,21 @@ def _of_detector(forecast: Evaluation) -> Iterator[Assumption]:
 
 
 def _of_response(response: Response) -> tuple[tuple[str, str, str], ...]:
-    """Keys of a response with their names and values."""
+    """Keys of a response with their names and values, the threshold first."""
+    threshold = ("threshold", "threshold", _cut(response, 0.0))
+    live = ("live_fraction", "live fraction", percent(response.live_fraction))
+    if response.neutron_efficiency is not None:
+        share = percent(response.neutron_efficiency)
+        return (threshold, ("neutron_efficiency", "neutron efficiency", share), live)
+    gamma = response.light.get("gamma", None)
+    seen = float(gamma.visible(np.array(1.0))) if gamma is not None else 0.0
+    gammas = ("gamma_containment", "gamma rays contained", percent(seen))
     return (
-        ("threshold", "threshold", _cut(response, 0.0)),
+        threshold,
         ("resolution", "resolution", resolution(response)),
         ("efficiency", "efficiency", curve(response.efficiency, response.scale)),
-        ("live_fraction", "live fraction", percent(response.live_fraction)),
+        *([gammas] if "electron" in response.light else []),
+        live,
     )
 
 
