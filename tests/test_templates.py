@@ -11,7 +11,13 @@ from tenkpc.detector.detector_file import BackgroundKeys, DetectorKeys, Uncertai
 from tenkpc.detector.media import MEDIA
 from tenkpc.detector.own_reactions import InteractionKeys, OwnNucleusKeys
 from tenkpc.detector.response_file import ResponseKeys, YieldKeys
-from tenkpc.source.burst_file import CoreKeys, IntegratedKeys, PeakKeys, TwoPhaseKeys
+from tenkpc.source.burst_file import (
+    CoreKeys,
+    IntegratedKeys,
+    LongCoolingKeys,
+    PeakKeys,
+    TwoPhaseKeys,
+)
 
 DETECTORS = {medium: templates.detector(medium) for medium in templates.MEDIA}
 BURST = templates.burst()
@@ -65,7 +71,7 @@ def test_every_medium_has_one():
                 OwnNucleusKeys,
             ),
         ),
-        ([BURST], (PeakKeys, CoreKeys, TwoPhaseKeys, IntegratedKeys)),
+        ([BURST], (PeakKeys, CoreKeys, TwoPhaseKeys, LongCoolingKeys, IntegratedKeys)),
     ],
     ids=["detector", "burst"],
 )
@@ -137,8 +143,8 @@ def test_own_reactions_of_the_detector_are_valid(tmp_path):
 
 
 def test_alternatives_of_the_burst_are_valid():
-    """The cut and the second form beside the core; the integrated form alone, both spectra."""
-    assert len(Burst.parse(BURST.replace("#: ", "")).components) == 3
+    """The cut and two more forms beside the core; the integrated form alone, both spectra."""
+    assert len(Burst.parse(BURST.replace("#: ", "")).components) == 4
     lines = [line[3:] for line in BURST.splitlines() if line.startswith("#! ")]
     alone = 'title = "x"\n' + "\n".join(lines)
     assert Burst.parse(alone).time_integrated

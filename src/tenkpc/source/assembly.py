@@ -14,10 +14,12 @@ from tenkpc.source.burst_file import (
     Emission,
     FourValues,
     IntegratedKeys,
+    LongCoolingKeys,
     PeakKeys,
     TwoPhaseKeys,
 )
 from tenkpc.source.components import Core, Flowing, Integrated, Peak, Pinched, Thermal
+from tenkpc.source.long_cooling import LongCooling
 from tenkpc.source.two_phase import TwoPhase
 
 NOTHING: FourValues = (0.0, 0.0, 0.0, 0.0)
@@ -32,6 +34,8 @@ def component(keys: AnyKeys) -> Flowing | Integrated:
             return _core(keys)
         case TwoPhaseKeys():
             return _two_phase(keys)
+        case LongCoolingKeys():
+            return _long_cooling(keys)
         case IntegratedKeys():
             return _integrated(keys)
 
@@ -92,6 +96,18 @@ def _two_phase(keys: TwoPhaseKeys) -> TwoPhase:
         warming_power=keys.warming_power,
         x_temperature_ratio=keys.x_temperature_ratio,
         rise_time_s=keys.rise_time,
+    )
+
+
+def _long_cooling(keys: LongCoolingKeys) -> LongCooling:
+    return LongCooling(
+        solar_masses=keys.solar_masses,
+        radius_cm=keys.radius,
+        density_correction=keys.density_correction,
+        opacity_boost=keys.opacity_boost,
+        total_energy_mev=keys.total_energy * MEV_PER_ERG,
+        pinching=keys.pinching,
+        begins_s=keys.begins_at,
     )
 
 

@@ -187,7 +187,21 @@ class TwoPhaseKeys(Strict):
     x_temperature_ratio: Annotated[float, Field(gt=0, le=10)] = 1.0
 
 
-AnyKeys = PeakKeys | CoreKeys | IntegratedKeys | TwoPhaseKeys
+class LongCoolingKeys(Strict):
+    """`kind = "long-cooling"`: a neutron star that cools for minutes, all kinds alike."""
+
+    name: Annotated[str, Field(min_length=1)]
+    kind: Literal["long-cooling"]
+    begins_at: Time
+    solar_masses: Annotated[float, Field(gt=0, le=10)]
+    radius: Annotated[float, InUnit("cm", "12 km", above=0.0)]
+    total_energy: Annotated[float, InUnit("erg", "1e53 erg", above=0.0)]
+    density_correction: Annotated[float, Field(gt=0, le=10)]
+    opacity_boost: Annotated[float, Field(gt=0, le=1000)]
+    pinching: Pinching
+
+
+AnyKeys = PeakKeys | CoreKeys | IntegratedKeys | LongCoolingKeys | TwoPhaseKeys
 ComponentKeys = Annotated[AnyKeys, Field(discriminator="kind")]
 
 
