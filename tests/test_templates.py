@@ -15,6 +15,7 @@ from tenkpc.source.burst_file import (
     CoreKeys,
     IntegratedKeys,
     LongCoolingKeys,
+    NeutronStarKeys,
     PeakKeys,
     TwoPhaseKeys,
 )
@@ -71,7 +72,10 @@ def test_every_medium_has_one():
                 OwnNucleusKeys,
             ),
         ),
-        ([BURST], (PeakKeys, CoreKeys, TwoPhaseKeys, LongCoolingKeys, IntegratedKeys)),
+        (
+            [BURST],
+            (PeakKeys, CoreKeys, TwoPhaseKeys, LongCoolingKeys, IntegratedKeys, NeutronStarKeys),
+        ),
     ],
     ids=["detector", "burst"],
 )

@@ -32,3 +32,6 @@ CM_PER_KPC = 648000 / math.pi * 149597870700e2 * 1e3
 LIGHT_CM_PER_S = 2.99792458e10  # exact in the SI
 # nominal solar mass parameter of the IAU 2015 over Newton's constant, in grams
 SOLAR_MASS_G = 1.98841e33
+# GM/c² of the Sun, of the nominal solar mass parameter 1.3271244e20 m³/s²
+SOLAR_RADIUS_OF_GRAVITY_CM = 1.3271244e26 / LIGHT_CM_PER_S**2
+GRAM_MEV = LIGHT_CM_PER_S**2 * MEV_PER_ERG  # energy of a gram at rest, MeV

@@ -20,6 +20,7 @@ from tenkpc.source.burst_file import (
 )
 from tenkpc.source.components import Core, Flowing, Integrated, Peak, Pinched, Thermal
 from tenkpc.source.long_cooling import LongCooling
+from tenkpc.source.neutron_star import NeutronStar
 from tenkpc.source.two_phase import TwoPhase
 
 NOTHING: FourValues = (0.0, 0.0, 0.0, 0.0)
@@ -38,6 +39,12 @@ def component(keys: AnyKeys) -> Flowing | Integrated:
             return _long_cooling(keys)
         case IntegratedKeys():
             return _integrated(keys)
+
+
+def star(keys: BurstKeys) -> NeutronStar | None:
+    """Give the neutron star that is left, where the file says which."""
+    given = keys.neutron_star
+    return None if given is None else NeutronStar(given.solar_masses, given.radius)
 
 
 def notes(keys: BurstKeys) -> Iterator[str]:

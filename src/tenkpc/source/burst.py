@@ -17,6 +17,7 @@ from tenkpc.errors import InputError, UnknownNameError
 from tenkpc.source import assembly, panels
 from tenkpc.source.burst_file import BurstKeys
 from tenkpc.source.components import Flowing, Integrated
+from tenkpc.source.neutron_star import NeutronStar
 from tenkpc.source.summary import Summary
 
 Floats = NDArray[np.float64]
@@ -45,6 +46,8 @@ class Burst:
         what the file calls them, in the same order.
     notes
         sentences about what was set without being written.
+    star
+        the neutron star that is left, where the file says which.
     document
         the file as it was read, or one that says the same, and what was changed since.
     """
@@ -56,6 +59,7 @@ class Burst:
     components: tuple[Flowing | Integrated, ...]
     names: tuple[str, ...] = ()
     notes: tuple[str, ...] = field(compare=False, default=())
+    star: NeutronStar | None = None
     document: Document = field(compare=False, default=Document(""), repr=False)
 
     @classmethod
@@ -89,6 +93,7 @@ class Burst:
             components=tuple(assembly.component(table) for table in keys.component),
             names=tuple(table.name for table in keys.component),
             notes=tuple(assembly.notes(keys)),
+            star=assembly.star(keys),
             document=document.with_tables(keys),
         )
 
@@ -247,7 +252,7 @@ class Burst:
 
     def summary(self) -> Summary:
         """Sum up energies and numbers, as a small table with warnings about the unusual."""
-        return Summary.from_moments(self.title, self._emitted_moments)
+        return Summary.from_moments(self.title, self._emitted_moments, self.star)
 
     @cached_property
     def _panels(self) -> Floats:

@@ -205,6 +205,13 @@ AnyKeys = PeakKeys | CoreKeys | IntegratedKeys | LongCoolingKeys | TwoPhaseKeys
 ComponentKeys = Annotated[AnyKeys, Field(discriminator="kind")]
 
 
+class NeutronStarKeys(Strict):
+    """`[neutron_star]`: what is left, whose binding energy the burst may not exceed."""
+
+    solar_masses: Annotated[float, Field(gt=0, le=3)]
+    radius: Annotated[float, InUnit("cm", "12 km", minimum=9e5)]
+
+
 class BurstKeys(Strict):
     """A whole burst file."""
 
@@ -212,6 +219,7 @@ class BurstKeys(Strict):
     about: str = ""
     start: Time = -0.03
     end: Time = 80.0
+    neutron_star: NeutronStarKeys | None = None
     component: tuple[ComponentKeys, ...]
 
     @classmethod

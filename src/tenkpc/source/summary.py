@@ -9,6 +9,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from tenkpc.constants import MEV_PER_ERG
+from tenkpc.source.neutron_star import USUAL_LEPTONS, NeutronStar
 from tenkpc.source.spectra import pinching_from_moments
 from tenkpc.species import ANTI_NU_E, MULTIPLICITY, NU_E, SPECIES, SYMBOLS
 
@@ -36,6 +37,8 @@ class Summary:
         emitted energy in erg and number of neutrinos, by species.
     mean_energy_mev, pinching
         mean energy and effective pinching, by species; not a number where nothing is emitted.
+    star
+        the neutron star that is left, where it is known.
     """
 
     title: str
@@ -43,9 +46,10 @@ class Summary:
     number: tuple[float, ...]
     mean_energy_mev: tuple[float, ...]
     pinching: tuple[float, ...]
+    star: NeutronStar | None = None
 
     @classmethod
-    def from_moments(cls, title: str, moments: Floats) -> Summary:
+    def from_moments(cls, title: str, moments: Floats, star: NeutronStar | None = None) -> Summary:
         """Summarise the emitted Σ Eⁿ, n = 0, 1, 2, shape (3, 4), in MeVⁿ."""
         number, energy, square = moments
         emits = number > 0
@@ -53,7 +57,8 @@ class Summary:
         mean[emits] = energy[emits] / number[emits]
         pinching[emits] = pinching_from_moments(mean[emits], square[emits] / number[emits])
         columns = (energy / MEV_PER_ERG, number, mean, pinching)
-        return cls(title, *(tuple(float(v) for v in column) for column in columns))
+        first, second, third, fourth = (tuple(map(float, column)) for column in columns)
+        return cls(title, first, second, third, fourth, star)
 
     @property
     def total_energy_erg(self) -> float:
@@ -84,6 +89,7 @@ class Summary:
                 f"collapse gives {low:.0e} to {high:.0e} erg. Is an energy per kind taken for a "
                 "sum, or the reverse?"
             )
+        yield from self._beyond_the_star()
         least, most = USUAL_MEAN_ENERGY_MEV
         for name, mean in zip(SPECIES, self.mean_energy_mev, strict=True):
             if mean < least or mean > most:
@@ -91,6 +97,32 @@ class Summary:
                     f"The mean energy of {name} is {mean:.3g} MeV; {least:g} to {most:g} MeV is "
                     "usual. Is a temperature taken for a mean energy, or the reverse?"
                 )
+
+    def _beyond_the_star(self) -> Iterator[str]:
+        """Say where the burst gives more than the star that it leaves has lost."""
+        if self.star is None:
+            return
+        most, fewest, highest = self.star.highest_binding_energy_erg, *USUAL_LEPTONS
+        if self.total_energy_erg > most:
+            yield (
+                f"The burst carries {self.total_energy_erg:.3g} erg, more than the binding energy "
+                f"of its neutron star, {self.star.binding_energy_erg:.3g} erg (at most {most:.3g})."
+            )
+        leptons = self.net_lepton_number / self.star.baryons
+        if not fewest <= leptons <= highest:
+            yield (
+                f"The burst carries away {leptons:.2g} leptons for each baryon of its neutron "
+                f"star; {fewest:g} to {highest:g} is usual."
+            )
+
+    def _of_star(self) -> Iterator[str]:
+        if self.star is not None:
+            bound = self.star.binding_energy_erg
+            yield (
+                f"of the neutron star's binding energy, {bound:.4g} erg: "
+                f"{100 * self.total_energy_erg / bound:.0f} %; "
+                f"leptons per baryon: {self.net_lepton_number / self.star.baryons:.3f}"
+            )
 
     def __str__(self) -> str:
         head = f"{'one kind of':<12}{'energy':>12}{'number':>12}{'mean energy':>14}{'pinching':>10}"
@@ -105,6 +137,7 @@ class Summary:
             "",
             f"all six kinds: {self.total_energy_erg:.4g} erg; "
             f"{SYMBOLS['nu_e']} less {SYMBOLS['anti_nu_e']}: {self.net_lepton_number:.3e}",
+            *self._of_star(),
             *self.warnings,
         ]
         return "\n".join(line for text in lines for line in _wrapped(text))
