@@ -12,11 +12,13 @@ import sys
 import time
 
 import numpy as np
+import pytest
 from scipy.integrate import quad
 from scipy.special import ndtr
 
 from tenkpc import Burst, Detector, Forecast, Unconverted, interactions
 from tenkpc.constants import CM_PER_KPC
+from tenkpc.detector import gallery
 from tenkpc.forecast import arguments, exposures, flux
 from tenkpc.forecast.compiled import compile_rows
 from tenkpc.forecast.fold import fold
@@ -106,12 +108,14 @@ def test_counts_of_one_more_integrated_burst():
     line("counts of one more integrated burst", ours, reference, "at most 1/1000")
 
 
-def test_compiling_a_detector():
-    """All interactions of the gallery tank, in seconds."""
-    made = exposures.exposures(TANK, (), None)
-    edges = np.array(arguments.energy_edges_mev(None))
-    ours = seconds(lambda: compile_rows(made, EnergyGrid(), edges), repeat=3)
-    line("compile a detector", ours, 1.0, "at most 0.5 s")
+@pytest.mark.parametrize("name", gallery.names())
+def test_compiling_a_detector(name):
+    """All interactions of a gallery detector, in seconds."""
+    detector = Detector.gallery(name)
+    made = exposures.exposures(detector, (), None)
+    edges = np.array(arguments.energy_edges_mev(None, detector.response.scale))
+    ours = seconds(lambda: compile_rows(made, EnergyGrid(), edges), repeat=5)
+    line(f"compile {name}", ours, 1.0, "at most 0.5 s")
 
 
 def process(code):

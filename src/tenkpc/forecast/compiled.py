@@ -137,6 +137,7 @@ class _CellsOf:
         self.exposures, self.edges_mev = exposures, edges_mev
         self.edges: dict[str, Floats] = {}
         self.shares: dict[tuple[int, str], _Shares] = {}
+        self.lines: dict[tuple[int, float], _Shares] = {}
 
     def __call__(self, response: Response, state: FinalState) -> tuple[Floats, _Shares]:
         """Edges of the cells for a state's lead particle, and the shares of each."""
@@ -147,6 +148,16 @@ class _CellsOf:
         if key not in self.shares:
             self.shares[key] = _Shares.of(response, edges[:-1], edges[1:], self.edges_mev)
         return edges, self.shares[key]
+
+    def line(self, response: Response, state: FinalState, start_mev: float) -> _Shares:
+        """Shares of the single energy that a state with a fixed deposit is observed with."""
+        kinetic = state.deposit.kinetic_mev if isinstance(state.deposit, Fixed) else 0.0
+        low = start_mev + (response.visible(state.lead, kinetic) or 0.0) - 0.5 * LINE_WIDTH_MEV
+        key = id(response), low
+        if key not in self.lines:
+            ends = np.array([low]), np.array([low + LINE_WIDTH_MEV])
+            self.lines[key] = _Shares.of(response, *ends, self.edges_mev)
+        return self.lines[key]
 
     def _breaks(self, cells: str) -> set[float]:
         """Knots of all responses, and the lowest visible energies of final states they see."""
@@ -296,7 +307,7 @@ def _blocks(
         if response.counts_neutrons:
             _count_neutrons(block, totals, state, response)
         elif isinstance(state.deposit, Fixed):
-            _count_line(block, totals, _line_shares(state, response, edges_mev, start))
+            _count_line(block, totals, cells.line(response, state, start))
         else:
             shares, kinetic = _observed(state, response, cells, start)
             alike.setdefault(kinetic.tobytes(), (kinetic, []))[1].append((block, shares))
@@ -358,18 +369,11 @@ def _observed(
     return shares.times(accepted), kinetic
 
 
-def _line_shares(state: FinalState, response: Response, edges_mev: Floats, start: float) -> _Shares:
-    """Shares of the single energy that a state with a fixed deposit is observed with."""
-    kinetic = state.deposit.kinetic_mev if isinstance(state.deposit, Fixed) else 0.0
-    low = start + (response.visible(state.lead, kinetic) or 0.0) - 0.5 * LINE_WIDTH_MEV
-    return _Shares.of(response, np.array([low]), np.array([low + LINE_WIDTH_MEV]), edges_mev)
-
-
 def _kept(
     state: FinalState, response: Response, cells: _CellsOf, start: float
 ) -> tuple[Floats, Floats]:
     """Counted share of each cell, and the cells' kinetic edges."""
     if isinstance(state.deposit, Fixed):
-        return _line_shares(state, response, EVERYTHING, start).bins.sum(axis=1), np.zeros(2)
+        return cells.line(response, state, start).bins.sum(axis=1), np.zeros(2)
     shares, kinetic = _observed(state, response, cells, start)
     return shares.bins.sum(axis=1), kinetic
