@@ -7,7 +7,7 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
-from tenkpc import data
+from tenkpc import Detector, data
 from tenkpc.constants import AVOGADRO_PER_MOL, PROTON_MASS_MEV
 from tenkpc.detector import materials
 from tenkpc.detector.quenching import (
@@ -17,6 +17,7 @@ from tenkpc.detector.quenching import (
     quenched_protons,
     stopping_mev_cm2_g,
 )
+from tenkpc.errors import FileError
 
 TABLE = data.document("stopping/protons.toml")
 ATOMS = {s: n / 1e3 for s, n in materials.elements(materials.of_formula("CH2")).items()}
@@ -113,3 +114,14 @@ def test_lindhard(element, protons, nucleons, k, expected):
     given = lindhard(protons, nucleons, k)
     assert given.visible(kinetic) == pytest.approx(made.visible(kinetic), rel=4e-3)
     assert made.kinetic(made.visible(kinetic)) == pytest.approx(kinetic, rel=1e-9)
+
+
+@pytest.mark.parametrize("rows", ["0,0", "0,1\n1,2", "1,5\n10,8", "1,0.2\n0.5,0.3"])
+def test_tables_that_make_light_of_nothing_are_refused(rows, tmp_path):
+    """One point at zero, light without energy, more light than energy, energies that fall."""
+    (tmp_path / "light.csv").write_text(f"kinetic_mev,visible_mev\n{rows}\n")
+    text = Detector.gallery("brine-hall").text.replace(
+        'birks = "0.0104 cm/MeV"', 'quenching = { file = "light.csv", beyond = "extend" }'
+    )
+    with pytest.raises(FileError, match=r"response\.quenching"):
+        Detector.parse(text, folder=str(tmp_path))

@@ -82,3 +82,11 @@ def test_predictive_intervals_never_reach_below_zero(mean, error, probability):
     wider = predictive_interval(mean, error, 0.999)
     assert wider.low <= found.low
     assert wider.high >= found.high
+
+
+@pytest.mark.parametrize("error", [0.3, 1.0])
+def test_huge_means_keep_the_shape_of_their_error(error):
+    """Just below and above the mean from which chance is normal: the same shares of it, 1e-4."""
+    below, above = (predictive_interval(mean, error) for mean in (0.999e9, 1.001e9))
+    assert below.low / 0.999 == pytest.approx(above.low / 1.001, rel=1e-4)
+    assert below.high / 0.999 == pytest.approx(above.high / 1.001, rel=1e-4)

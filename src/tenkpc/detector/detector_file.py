@@ -27,6 +27,8 @@ def _of_material(name: str) -> materials.Composition:
     return materials.of_formula(materials.named(name).formula)
 
 
+# no interaction is off by more
+LARGEST_FACTOR = 1e6
 # ways to say what a volume is made of
 COMPOSITIONS: Mapping[str, Callable[[Any], materials.Composition]] = {
     "material": _of_material,
@@ -168,8 +170,11 @@ def check_choice(
             )
             raise InputError(message)
         return
-    if not isinstance(value, int | float) or not 0 < value < float("inf"):
-        message = f"expected true, false, an option or a positive factor, found {value!r}"
+    if not isinstance(value, int | float) or not 0 < value <= LARGEST_FACTOR:
+        message = (
+            f"expected true, false, an option or a positive factor of {LARGEST_FACTOR:g} at most, "
+            f"found {value!r}"
+        )
         raise InputError(message)
 
 

@@ -17,7 +17,7 @@ from typing import Protocol
 
 import numpy as np
 from numpy.typing import NDArray
-from scipy.special import bdtrc, gammainc
+from scipy.special import betainc, gammainc
 
 from tenkpc.detector.quenching import Light, Plain
 
@@ -96,8 +96,9 @@ class Registered:
 
     def _of_fixed(self, number: Floats) -> Floats:
         enough = number >= self.at_least
-        some = np.where(enough, number, self.at_least).astype(int)
-        share = bdtrc(self.at_least - 1, some, self.probability)
+        some = np.where(enough, number, self.at_least)
+        # Σ_k≥n C(M, k) p^k (1 − p)^(M−k) = I_p(n, M − n + 1)
+        share = betainc(self.at_least, some - self.at_least + 1, self.probability)
         return np.where(enough, share, 0.0)
 
     @property

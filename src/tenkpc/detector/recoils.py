@@ -120,8 +120,13 @@ def table(
     read = document.columns(keys.file or "", columns)
     kinetic, visible = ([mev * value for value in read[column]] for column in columns)
     problem = ""
+    nothing = kinetic[0] == 0
     if not _ascending(kinetic) or not _ascending(visible) or kinetic[0] < 0 or visible[0] < 0:
         problem = "expected kinetic and visible energies that ascend from zero"
+    elif (nothing and visible[0] > 0) or len(kinetic) - nothing < 1:
+        problem = "expected no visible energy at zero, and some above it"
+    elif any(seen > 1.0001 * energy for energy, seen in zip(kinetic, visible, strict=True)):
+        problem = "visible energies are those of an electron: never more than the kinetic energy"
     elif kinetic[-1] < fastest_mev and keys.beyond != "extend":
         problem = (
             f"the table ends at {kinetic[-1]:g} MeV and recoils have up to {fastest_mev:g} MeV; "

@@ -19,6 +19,8 @@ Window = tuple[float, float]
 
 # bins at the most: 0.1 ms steps over 80 s
 MOST_BINS = 1_000_000
+# distances that a forecast can be of: outside of them nothing of it means anything
+NEAREST_KPC, FARTHEST_KPC = 1e-9, 1e9
 # bins of energy at the most
 MOST_ENERGY_BINS = 10_000
 
@@ -26,10 +28,25 @@ MOST_ENERGY_BINS = 10_000
 def distance_kpc(distance: Quantity, argument: str = "distance") -> float:
     """Give a distance in kpc; it must be more than zero."""
     value = units.to_float(distance, "kpc", argument, "10 kpc")
-    if value <= 0:
-        message = f"{argument}: expected more than zero, found {distance}"
+    if not NEAREST_KPC <= value <= FARTHEST_KPC:
+        span = f"{NEAREST_KPC:g} kpc and at most {FARTHEST_KPC:g} kpc"
+        what = "more than zero" if value <= 0 else f"at least {span}"
+        message = f"{argument}: expected {what}, found {distance}"
         raise InputError(message)
     return value
+
+
+def check_kind(value: object, kind: type, argument: str, example: str) -> None:
+    """Check that an argument is of the kind that it has to be.
+
+    Raises
+    ------
+    InputError
+        where it is another, with a good value.
+    """
+    if not isinstance(value, kind):
+        message = f"{argument}: expected something like {example}, found {value!r}"
+        raise InputError(message)
 
 
 def energy_above_mev(energy: Quantity, scale: Scale) -> float:
@@ -67,8 +84,13 @@ def window_s(time: tuple[Quantity, Quantity], burst: Window) -> Window:
         message = f'time: expected a first and a last time, ("0 s", "1 s"), found {time!r}'
         raise InputError(message)
     start, end = (units.to_float(t, "s", "time", "1 s") for t in time)
+    return window_of(start, end, burst)
+
+
+def window_of(start: float, end: float, burst: Window) -> Window:
+    """Give the part of a window in s that lies within the burst."""
     low, high = max(start, burst[0]), min(end, burst[1])
-    if low >= high:
+    if not low < high:
         message = (
             f"time: no part of {start:g} s to {end:g} s lies within the burst, "
             f"which runs from {burst[0]:g} s to {burst[1]:g} s"

@@ -40,14 +40,21 @@ def frame(first: Evaluation, second: Evaluation) -> DataFrame:
     """
     from pandas import DataFrame
 
+    if not isinstance(second, Evaluation):
+        message = f"compare: expected a forecast, found {second!r}"
+        raise InputError(message)
     if first.total <= 0 or second.total <= 0:
         message = "compare: a forecast that counts nothing has no factors"
         raise InputError(message)
-    rows, total = [], first.total
+    rows, total, held = [], first.total, list[Step]()
     for step in steps(first, second):
+        held.append(step)
         after = step.forecast.total
-        rows.append((step.change, step.before, step.after, after / total, after))
-        total = after
+        if after <= 0:
+            continue  # no factor leads out of nothing: told together with the next change
+        told = (", ".join(part) for part in zip(*(each[:3] for each in held), strict=True))
+        rows.append((*told, after / total, after))
+        total, held = after, []
     table = DataFrame(rows, columns=["change", "from", "to", "factor", "total"])
     table.attrs["ratio"] = second.total / first.total
     return table.set_index("change")

@@ -169,7 +169,7 @@ class Evaluation:
     @cached_property
     def row_values(self) -> Floats:
         """Events by row and column of the compiled tensor."""
-        return fold(self._fluence, self._compiled.species, self._compiled.tensor)[:, 0]
+        return _counts(self._fluence, self._compiled.species, self._compiled.tensor)[:, 0]
 
     def _columns_by(self, by: str) -> tuple[tuple[str, ...], list[int]]:
         """Names of the columns of a table, and which of them each row belongs to."""
@@ -236,7 +236,7 @@ class Evaluation:
             tensor = self._compile(edges_mev).tensor[:, :, columns.FIRST_BIN :]
         else:
             tensor = exposures.compiled_by_neutrino_energy(*self._inputs, edges_mev)
-        folded = fold(self._fluence, self._compiled.species, tensor)[:, 0]
+        folded = _counts(self._fluence, self._compiled.species, tensor)[:, 0]
         return names, _summed(folded, owner, len(names))
 
     def _light_curve(self, edges: Floats, by: str) -> tuple[tuple[str, ...], Floats]:
@@ -246,9 +246,14 @@ class Evaluation:
         for times, weights, places in flux.binned_time_nodes(self.burst, edges, self.span_s):
             emitted = self.burst.rate(times, self._grid.nodes_mev) * weights[:, None]
             arriving = self._at_detector(emitted, times)
-            counted = fold(arriving, self._compiled.species, self._compiled.counted)[:, :, 0]
+            counted = _counts(arriving, self._compiled.species, self._compiled.counted)[:, :, 0]
             np.add.at(values, places, _summed(counted, owner, len(names)).T)
         return names, values.T
+
+
+def _counts(flux: Floats, species: NDArray[np.intp], tensor: Floats) -> Floats:
+    """Fold, and take as zero what a polynomial leaves below it where there is next to nothing."""
+    return np.maximum(fold(flux, species, tensor), 0.0)
 
 
 def _summed(values: Floats, owner: Sequence[int], count: int) -> Floats:

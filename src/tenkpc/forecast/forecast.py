@@ -75,6 +75,15 @@ class Forecast(Evaluation):
         interactions: Mapping[str, bool | float | str] | None = None,
         background_time: Quantity | None = None,
     ) -> None:
+        arguments.check_kind(detector, Detector, "detector", 'Detector.gallery("brine-hall")')
+        arguments.check_kind(burst, Burst, "burst", 'Burst.preset("ordinary-collapse")')
+        if conversion is not None and not hasattr(conversion, "arriving"):
+            message = f'conversion: expected one such as Adiabatic("normal"), found {conversion!r}'
+            raise InputError(message)
+        if interactions is not None:
+            arguments.check_kind(
+                interactions, Mapping, "interactions", '{"proton-scattering": 1.1}'
+            )
         self.detector = detector
         self.burst = burst
         self.distance_kpc = arguments.distance_kpc(distance)
@@ -122,6 +131,9 @@ class Forecast(Evaluation):
         ``{"response.threshold": "8 MeV", "burst.core.rise_time": "40 ms"}``: paths that begin
         with ``burst.`` belong to the burst, all others to the detector.
         """
+        arguments.check_kind(changes, Mapping, "changes", '{"response.threshold": "8 MeV"}')
+        for key in changes:
+            arguments.check_kind(key, str, "changes", '{"response.threshold": "8 MeV"}')
         mine = {key: key.startswith("burst.") for key in changes}
         of_burst = {k.removeprefix("burst."): v for k, v in changes.items() if mine[k]}
         of_detector = {k: v for k, v in changes.items() if not mine[k]}
@@ -157,6 +169,7 @@ class Forecast(Evaluation):
 
         Takes the arguments of a forecast, with a sequence of bursts in place of one.
         """
+        arguments.check_kind(bursts, Sequence, "bursts", "[first, second]")
         if not bursts:
             message = "bursts: expected at least one burst"
             raise InputError(message)

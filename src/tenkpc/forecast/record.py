@@ -3,15 +3,17 @@
 from __future__ import annotations
 
 import json
+import math
 import warnings
 from collections.abc import Mapping
 from typing import Any, TypeVar
 
 from tenkpc import __version__, data
 from tenkpc.detector.detector import Detector
+from tenkpc.detector.detector_file import check_choice
 from tenkpc.documents import Document
 from tenkpc.errors import InputError
-from tenkpc.forecast import budget
+from tenkpc.forecast import arguments, budget
 from tenkpc.forecast.evaluation import Evaluation
 from tenkpc.forecast.frames import named
 from tenkpc.propagation import conversion
@@ -40,8 +42,8 @@ def from_json(text: str, kind: type[Made]) -> Made:
         record = json.loads(text)
         made = _made(record["inputs"], kind)
         written, version = float(record["total"]), str(record["tenkpc_version"])
-        fingerprint = str(record["data"])
-    except (json.JSONDecodeError, KeyError, TypeError, AttributeError, ValueError) as error:
+        fingerprint, total = str(record["data"]), made.total
+    except (LookupError, TypeError, AttributeError, ValueError, RecursionError) as error:
         if isinstance(error, InputError):
             raise
         message = f"expected what to_json wrote; found something else ({error})"
@@ -54,25 +56,49 @@ def from_json(text: str, kind: type[Made]) -> Made:
         )
         if then != now
     ]
-    if abs(made.total - written) > SAME * abs(written):
-        differing.append(f"total {written:.10g}, now {made.total:.10g}")
+    if not (math.isfinite(written) and abs(total - written) <= SAME * abs(written)):
+        differing.append(f"total {written:.10g}, now {total:.10g}")
     if differing:
         warnings.warn(f"not as it was written: {'; '.join(differing)}", stacklevel=3)
     return made
 
 
 def _made(inputs: Mapping[str, Any], kind: type[Made]) -> Made:
-    window = inputs["window_s"]
+    """Make the forecast, each input under the checks that a user's own would pass."""
+    detector = Detector.of_document(Document.of_record(inputs["detector"]))
+    burst = Burst.of_document(Document.of_record(inputs["burst"]))
+    window, chosen = _window(inputs["window_s"]), dict(inputs["interactions"])
+    options = {own.key: own.options for own in detector.own}
+    for key, value in chosen.items():
+        check_choice(key, value, options)
+    span = (burst.start_s, burst.end_s)
     return kind.of_inputs(
-        detector=Detector.of_document(Document.of_record(inputs["detector"])),
-        burst=Burst.of_document(Document.of_record(inputs["burst"])),
-        distance_kpc=float(inputs["distance_kpc"]),
+        detector=detector,
+        burst=burst,
+        distance_kpc=arguments.distance_kpc(f"{float(inputs['distance_kpc'])!r} kpc"),
         conversion=conversion.of_record(inputs["conversion"]),
-        interactions=dict(inputs["interactions"]),
-        window_s=None if window is None else (float(window[0]), float(window[1])),
-        energy_above_mev=inputs["energy_above_mev"],
-        background_time_s=inputs["background_time_s"],
+        interactions=chosen,
+        window_s=None if window is None else arguments.window_of(*window, span),
+        energy_above_mev=_not_negative(inputs, "energy_above_mev"),
+        background_time_s=_not_negative(inputs, "background_time_s"),
     )
+
+
+def _window(given: Any) -> tuple[float, float] | None:
+    if given is None:
+        return None
+    start, end = map(float, given)
+    return start, end
+
+
+def _not_negative(inputs: Mapping[str, Any], name: str) -> float | None:
+    value = inputs[name]
+    if value is None:
+        return None
+    if isinstance(value, str) or not 0 <= float(value) < math.inf:
+        message = f"{name}: expected a number of zero or more, found {value!r}"
+        raise InputError(message)
+    return float(value)
 
 
 def _record(forecast: Evaluation) -> dict[str, Any]:

@@ -66,6 +66,10 @@ def predictive_interval(
     if relative_error < SMALLEST_ERROR:
         return poisson_interval(mean, probability)
     r = relative_error**-2
+    if mean > NORMAL_ABOVE > r:  # chance is nothing beside the mean's own distribution
+        tail = 0.5 * (1 - probability)
+        low, high = (float(mean * gammaincinv(r, share) / r) for share in (tail, 1 - tail))
+        return Interval(low, high, probability)
 
     def cumulative(count: float) -> float:
         return float(betainc(r, count + 1, r / (r + mean)))

@@ -114,7 +114,7 @@ class FinalState:
         neutrino energies at which the cross section is not smooth (knots of a table).
     window_mev
         neutrino energies for which the cross section is meant; above it is held at its last
-        value and the share of counts from there is reported.
+        value, or goes on as its formula says, and the share of counts from there is reported.
     relative_error
         1σ of the cross section, relative, against neutrino energy in MeV: log-normal and fully
         correlated over energies.

@@ -175,7 +175,10 @@ def per_recoil_energy(
 
 
 def total_cm2(neutrino_mev: ArrayLike, mass_mev: float, differential: partial[Floats]) -> Floats:
-    """Total cross section in cm² per nucleus; held at its value at 200 MeV above it."""
+    """Total cross section in cm² per nucleus; zero at zero.
+
+    Above the window it goes on as the formula says, together with the recoil spectrum.
+    """
     energy = np.asarray(neutrino_mev, dtype=float)
     positive = np.where(energy > recoil.LOWEST_MEV, energy, 1.0)[..., None]
     x, w = gauss(NODES)

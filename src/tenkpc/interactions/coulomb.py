@@ -18,8 +18,7 @@ def fermi_function(momentum_mev: Floats, charge: int, nucleons: int) -> Floats:
 
     F = 2(1 + γ) (2pR)^(−2(1−γ)) e^(πη) |Γ(γ + iη)|² / Γ(2γ + 1)²,  γ = √(1 − (αZ)²),  η = αZE/p
 
-    (E. Fermi, Z. Phys. 88 (1934) 161). Below 1 keV/c it is held at its value there times the
-    momentum's ratio, so that p F stays smooth.
+    (E. Fermi, Z. Phys. 88 (1934) 161). Below 1 keV/c it is held at its value there.
 
     Parameters
     ----------

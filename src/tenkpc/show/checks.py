@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import json
 import math
-from collections.abc import Callable, Iterator, Mapping
+from collections.abc import Callable, Iterator, Mapping, Sequence
 from dataclasses import asdict, dataclass
 from types import MappingProxyType
 from typing import Any
@@ -16,7 +16,7 @@ from numpy.typing import NDArray
 from tenkpc import data, interactions, rendering
 from tenkpc.constants import CHARGED_PION_MASS_MEV, ELECTRON_MASS_MEV, MUON_MASS_MEV
 from tenkpc.detector import materials
-from tenkpc.errors import UnknownNameError
+from tenkpc.errors import ComputationError, UnknownNameError
 from tenkpc.interactions.base import Interaction
 from tenkpc.quadrature import gauss
 from tenkpc.rendering import Page, Paragraph, Row, Rule, Table
@@ -128,13 +128,10 @@ def _ours(entry: Mapping[str, Any], option: str | None) -> float:
 def _average(entry: Mapping[str, Any], option: str | None, species: str, spectrum: str) -> float:
     """Average over a spectrum of the wanted final states, or of σ/E, in cm²."""
     wanted = entry.get("final_states")
+    _all_there(entry, option, species, wanted)
     energy, weight = SPECTRA[spectrum](entry)
     if entry.get("per_energy"):
         weight = weight / (weight @ energy)
-    if "between_mev" in entry:
-        low, high = entry["between_mev"]
-        weight = weight * ((energy > low) & (energy < high))
-        weight = weight / weight.sum()
     return float(
         sum(
             share * (weight @ state.sigma_cm2(energy))
@@ -143,6 +140,16 @@ def _average(entry: Mapping[str, Any], option: str | None, species: str, spectru
             if wanted is None or state.label in wanted
         )
     )
+
+
+def _all_there(
+    entry: Mapping[str, Any], option: str | None, species: str, wanted: Sequence[str] | None
+) -> None:
+    """Refuse labels that no final state has, which would count as nothing."""
+    labels = {s.label for _, made in _reactions(entry, option) for s in made.final_states(species)}
+    if not labels.issuperset(wanted or ()):
+        message = f"no final states of {entry['interaction']} are called {wanted}"
+        raise ComputationError(message)
 
 
 def _reactions(entry: Mapping[str, Any], option: str | None) -> Iterator[tuple[float, Interaction]]:
@@ -167,10 +174,10 @@ def _line(energy_mev: float) -> tuple[Floats, Floats]:
     return np.array([energy_mev]), np.ones(1)
 
 
-def _boron_8() -> tuple[Floats, Floats]:
+def _boron_8(low_mev: float = 0.0, high_mev: float = BORON_END_MEV) -> tuple[Floats, Floats]:
     """Approximate spectrum of solar boron-8: good to 5 % in an average that rises as E²."""
     x, w = gauss(ORDER)
-    energy = x * BORON_END_MEV
+    energy = low_mev + x * (min(high_mev, BORON_END_MEV) - low_mev)
     kinetic = BORON_END_MEV - energy
     electron = kinetic + ELECTRON_MASS_MEV
     shape = energy**2 * electron * np.sqrt(kinetic * (electron + ELECTRON_MASS_MEV)) * w
@@ -196,7 +203,7 @@ SPECTRA: Mapping[str, Callable[[Mapping[str, Any]], tuple[Floats, Floats]]] = Ma
         "stopped muon nu_e": lambda _: _stopped_muon(lambda x: 12 * x**2 * (1 - x)),
         "stopped muon anti_nu_mu": lambda _: _stopped_muon(lambda x: 2 * x**2 * (3 - 2 * x)),
         "stopped pion line": lambda _: _line(PION_LINE_MEV),
-        "solar boron-8": lambda _: _boron_8(),
+        "solar boron-8": lambda entry: _boron_8(*entry.get("between_mev", ())),
         "5 GeV": lambda _: _line(5000.0),
         "reactor mixture": lambda entry: _reactor(entry["fission_fractions"]),
     }

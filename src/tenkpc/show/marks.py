@@ -58,6 +58,9 @@ def panels(
     ax: Axes | None, heights: Sequence[float] = (1,), *, share: bool = True, tall: float = 5.2
 ) -> list[Axes]:
     """Give the axes to draw on: the given ones alone, or the panels of a new figure."""
+    if ax is not None and not hasattr(ax, "stairs"):
+        message = f"ax: expected axes to draw on, found {type(ax).__name__}"
+        raise InputError(message)
     if ax is not None:
         return [ax]
     from matplotlib import pyplot as plt

@@ -106,7 +106,8 @@ def counts_versus_distance(
         low, high = min(all_totals) * falling, max(all_totals) * falling
         main.fill_between(distances, low, high, color="0.85", linewidth=0)
         at = 2 * len(distances) // 5
-        _name_band(main, (distances[at], high[at]), f"with {len(further)} other bursts", above=True)
+        name = f"with {len(further)} other {'bursts' if len(further) > 1 else 'burst'}"
+        _name_band(main, (distances[at], high[at]), name, above=True)
     _chance(main, distances, totals)
     main.plot(distances, totals, color="black", linewidth=weight(1))
     main.axhline(1.0, color="0.5", linewidth=0.5)
