@@ -71,7 +71,8 @@ class BurstRange:
             Paragraph(
                 f"{first.detector.title} counts {least} to {most} events, {middle} in the middle, "
                 f"over {len(ranked)} {'bursts' if len(ranked) > 1 else 'burst'} at "
-                f"{words.distance(first.distance_kpc)}, with {first.conversion.describe()}. Bursts are possibilities without a probability: "
+                f"{words.distance(first.distance_kpc)}, with "
+                f"{first.conversion.describe()}. Bursts are possibilities without a probability: "
                 "this is a range and no standard deviation."
             ),
             Table(rows, ("burst", "counted")),
