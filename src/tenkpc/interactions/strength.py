@@ -25,9 +25,9 @@ Peak = tuple[float, float, float]
 
 # Gaussians end so many widths from their middle
 CUT = 2.5
-# bins of excitation energy: this share of the narrowest Gaussian, between these widths in MeV; half
-# as wide moves no cross section by 1e-3 at 20 MeV
-BIN_SHARE, FINEST_MEV, COARSEST_MEV = 0.25, 0.5, 1.0
+# bins of excitation energy under wide and under narrow Gaussians, and what is narrow, MeV: half as
+# wide moves no cross section by 2e-3 at 20 MeV
+COARSE_MEV, FINE_MEV, NARROW_MEV = 1.0, 0.5, 4.0
 # kinds of strength: of isospin, of spin and isospin (with g_A² inside or not), and of both
 # dipoles; what the field calls magnetic dipole is spin strength in units of μ_N²
 KINDS = (
@@ -127,11 +127,16 @@ def _edges(peaks: Sequence[Peak], borders_mev: Sequence[float]) -> Floats:
     if not ends:
         return np.zeros(1)
     low, high = min(end[0] for end in ends), max(end[1] for end in ends)
-    narrowest = min(width for _, width, _ in peaks if width)
-    step = float(np.clip(BIN_SHARE * narrowest, FINEST_MEV, COARSEST_MEV))
-    steps = np.arange(np.floor(low / step), np.ceil(high / step) + 1) * step
-    wanted = np.concatenate([steps, borders_mev, np.ravel(ends)])
+    steps = [_steps(peak) for peak in peaks if peak[1]]
+    wanted = np.concatenate([*steps, borders_mev, np.ravel(ends)])
     return np.unique(np.clip(wanted, low, high))
+
+
+def _steps(peak: Peak) -> Floats:
+    """Borders of bins under one Gaussian."""
+    step = FINE_MEV if peak[1] < NARROW_MEV else COARSE_MEV
+    low, high = _ends(peak)
+    return np.arange(np.ceil(low / step), np.floor(high / step) + 1) * step
 
 
 def _ends(peak: Peak) -> tuple[float, float]:

@@ -86,7 +86,8 @@ def light_curve(
         shade = "black" if rank == 0 else colour(rank - 1)
         main.stairs(counts / widths, edges, color=shade, linewidth=weight(rank), baseline=None)
     main.set_yscale("log")
-    low, high = (total / widths).max() * DEPTH, (total / widths).max() * 3
+    highest = max(float((total / widths).max()), 1e-300)
+    low, high = highest * DEPTH, highest * 3
     main.set_ylim(low, high)
     main.set_ylabel("events / s, in bins of their own width")
     _background_level(main, frame, widths, edges)

@@ -189,7 +189,7 @@ def _fluence_behind(ax: Axes, forecast: Forecast) -> None:
     behind = ax.twinx()
     fluence = MULTIPLICITY @ forecast.fluence(ENERGY_MEV)
     behind.fill_between(ENERGY_MEV, fluence, color="0.9", linewidth=0)
-    behind.set_ylim(0, fluence.max() * 1.4)
+    behind.set_ylim(0, max(float(fluence.max()), 1e-300) * 1.4)
     behind.axis("off")
     ax.set_zorder(behind.get_zorder() + 1)
     ax.patch.set_visible(False)

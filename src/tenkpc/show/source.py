@@ -287,7 +287,7 @@ def _clearest(cases: Sequence[Floats]) -> int:
     """Index of the species whose curves, (species, energies) each, differ most at the closest."""
     curves = np.array(cases)
     pairs = [np.abs(a - b).max(axis=-1) for n, a in enumerate(curves) for b in curves[n + 1 :]]
-    return int(np.argmax(np.min(pairs, axis=0) / curves.max(axis=(0, 2))))
+    return int(np.argmax(np.min(pairs, axis=0) / np.maximum(curves.max(axis=(0, 2)), 1e-300)))
 
 
 def _name_cases(ax: Axes, energy: Floats, curves: Sequence[tuple[str, Floats]]) -> None:
