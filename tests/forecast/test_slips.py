@@ -39,6 +39,10 @@ FORECAST = Forecast(HALL, BURST, distance="10 kpc")
         ),
         (lambda: Forecast.range(HALL, BURST, distance="10 kpc"), "bursts: expected"),
         (lambda: Forecast.range(HALL, "ab", distance="10 kpc"), "burst: expected"),
+        (
+            lambda: FORECAST.within(time=("30 s", "40 s")).of(BURST.replace({"end": "20 s"})),
+            "no part of 30 s to 40 s lies within the burst",
+        ),
         (lambda: FORECAST.compare(3), "compare: expected a forecast"),
         (lambda: FORECAST.replace("abc"), "changes: expected"),
         (lambda: FORECAST.replace({3: 3}), "changes: expected"),

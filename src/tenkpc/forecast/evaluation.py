@@ -74,7 +74,15 @@ class Evaluation:
         return self.changed(conversion=conversion)
 
     def of(self, burst: Burst) -> Self:
-        """Forecast another burst in the same detector."""
+        """Forecast another burst in the same detector.
+
+        Raises
+        ------
+        InputError
+            where no part of the window of time lies within it.
+        """
+        if self.window_s is not None:
+            arguments.window_of(*self.window_s, (burst.start_s, burst.end_s))
         return self.changed(burst=burst)
 
     @property
