@@ -116,3 +116,19 @@ def test_unknown_keys_and_options_are_answered_with_the_nearest():
         interactions.by_key("proton-scatering")
     with pytest.raises(UnknownNameError, match="did you mean 'with-strangeness'"):
         interactions.by_key("proton-scattering", "with-strangenes")
+
+
+@EVERY
+def test_angles_are_held_like_cross_sections(key, option):
+    """Mean cosines lie between -1 and 1, and stay where a cross section is held."""
+    for states in reaction(key, option).branches.values():
+        for state in states:
+            if state.mean_cosine is None:
+                continue
+            start, end = state.window_mev
+            inside = np.linspace(start + 0.5, min(end, HIGHEST_ENERGY_MEV), 21)
+            assert np.all(np.abs(state.mean_cosine(inside)) <= 1)
+            beyond = np.array([end, 0.5 * (end + HIGHEST_ENERGY_MEV)])
+            held = end < HIGHEST_ENERGY_MEV and np.ptp(state.sigma_cm2(beyond)) == 0
+            if held:
+                assert np.ptp(state.mean_cosine(beyond)) < 1e-12

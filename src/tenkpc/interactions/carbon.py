@@ -222,7 +222,7 @@ def _ground(
         window_mev=(transition.energy_mev + ELECTRON_MASS_MEV, GROUND_STATE_END_MEV),
         relative_error=partial(piecewise, knots_mev=inputs.error_mev, values=inputs.charged_error),
         delayed=daughter,
-        mean_cosine=transition.mean_cosine,
+        mean_cosine=partial(_held, sigma=transition.mean_cosine, end_mev=GROUND_STATE_END_MEV),
     )
 
 

@@ -204,9 +204,13 @@ def _state(
         window_mev=(level.opens_mev, END_MEV),
         relative_error=partial(piecewise, knots_mev=level.error_mev, values=level.error),
         extras=extras,
-        mean_cosine=transition.mean_cosine if lead == "electron" else None,
+        mean_cosine=partial(_held_cosine, transition=transition) if lead == "electron" else None,
     )
 
 
 def _held(neutrino_mev: ArrayLike, transition: Transition) -> Floats:
     return transition.total_cm2(np.minimum(np.asarray(neutrino_mev, dtype=float), END_MEV))
+
+
+def _held_cosine(neutrino_mev: ArrayLike, transition: Transition) -> Floats:
+    return transition.mean_cosine(np.minimum(np.asarray(neutrino_mev, dtype=float), END_MEV))
