@@ -151,7 +151,8 @@ class Spectrum:
         return result
 
     def _b(self, neutrino_mev: Floats) -> Floats:
-        return np.exp(self.curve(np.minimum(neutrino_mev, END_MEV)))
+        # not held above the window: a kink there would spoil the table of the norm
+        return np.exp(self.curve(neutrino_mev))
 
     def _rest(self, pair_mev: Floats, kinetic_mev: Floats, b: Floats) -> Floats:
         """P E_l/[(ε + b)² (ε + ε_s)]."""
