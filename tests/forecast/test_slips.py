@@ -48,6 +48,7 @@ FORECAST = Forecast(HALL, BURST, distance="10 kpc")
         (lambda: FORECAST.replace({3: 3}), "changes: expected"),
         (lambda: FORECAST.at("1e-300 kpc"), "at least 1e-09 kpc and at most"),
         (lambda: FORECAST.at("1e200 kpc"), "at least 1e-09 kpc and at most"),
+        (lambda: plot.light_curve(FORECAST, seed=-1), "seed: expected"),
         (lambda: plot.spectrum(FORECAST, ax=[1, 2]), "ax: expected axes"),
     ],
 )

@@ -60,7 +60,6 @@ NUCLEON_MASS_MEV = 0.5 * (PROTON_MASS_MEV + NEUTRON_MASS_MEV)
 NODES, DEGREE = 32, 20
 # knots of p E F_C against the momentum: linear in the logarithm between them, good to 1e-6
 PHASE_KNOTS = np.geomspace(1e-3, 250.0, 3000)
-CURRENTS = ("electron", "positron", "neutral")
 WORDS = ("gamma rays", "gamma rays, neutron", "gamma rays, two neutrons")
 
 

@@ -113,7 +113,7 @@ def emissions(
     both = _below(energy_mev - second, temperature) if energy_mev > second else 0.0
     if both:
         after = energy_mev - second
-        taken = _mean_below(after, temperature)
+        taken = _mean_between(0.0, after, temperature)
         cooler = np.sqrt(max(after - taken, 0.0) / (nucleons / 10))
         gammas = after - taken - min(2 * cooler, after - taken)
         yield Emission(2, float(both), float(gammas))
@@ -174,10 +174,6 @@ def _first_moment(energy_mev: float, temperature_mev: float) -> float:
     """∫ ε² exp(−ε/t) dε/t² below an energy."""
     x = energy_mev / temperature_mev
     return float(temperature_mev * (2 - (x**2 + 2 * x + 2) * np.exp(-x)))
-
-
-def _mean_below(energy_mev: float, temperature_mev: float) -> float:
-    return _mean_between(0.0, energy_mev, temperature_mev)
 
 
 def _mean_between(low_mev: float, high_mev: float, temperature_mev: float) -> float:

@@ -8,6 +8,7 @@ from typing import TYPE_CHECKING, Any
 import numpy as np
 from numpy.typing import NDArray
 
+from tenkpc.errors import InputError
 from tenkpc.forecast.forecast import Forecast
 from tenkpc.forecast.others import other_conversions
 from tenkpc.forecast.uncertainty import garwood_interval
@@ -73,6 +74,9 @@ def light_curve(
         of one pseudo-burst, drawn as points with the interval that each count allows for its
         mean; None draws none.
     """
+    if seed is not None and seed < 0:
+        message = f"seed: expected a whole number of zero or more, or None, found {seed!r}"
+        raise InputError(message)
     main, *below = panels(ax, (4, 1))
     edges = np.asarray(TIME_EDGES_S if edges_s is None else edges_s, dtype=float)
     quantities = [f"{edge!r} s" for edge in edges.tolist()]
